@@ -1,0 +1,5 @@
+"""``python -m niche`` is the command ``niche``."""
+
+from niche.cli import main
+
+main()

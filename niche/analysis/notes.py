@@ -1,0 +1,106 @@
+"""Sentences on what a reader should know before using the numbers: few units, lost draws, doubtful agreement."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from itertools import combinations
+from typing import TYPE_CHECKING
+
+from niche.resampling.intervals import FEW_UNITS, FEWEST_UNITS
+
+if TYPE_CHECKING:
+    from niche.analysis.results import Coefficients, Estimate, Options
+    from niche.indices.products import Floats
+    from niche.usage import Usage
+
+
+def notes_on(
+    usage: Usage,
+    options: Options,
+    breadth: Mapping[str, Estimate],
+    overlap: Mapping[str, Estimate],
+    coefficients: Coefficients | None,
+    capacity: Mapping[str, object],
+    other_weighting: Floats | None,
+) -> tuple[str, ...]:
+    """All notes of an analysis, the gravest first."""
+    return (
+        *_few_units(usage),
+        *_lost_draws(usage, options, {**breadth, **overlap}, coefficients),
+        *_weightings_differ(usage, options, overlap, other_weighting),
+        *_plug_in(breadth, overlap),
+        *_no_capacity(usage, coefficients, capacity),
+    )
+
+
+def _few_units(usage: Usage) -> Iterator[str]:
+    counts = dict(zip(usage.species, usage.unit_counts.tolist(), strict=True))
+    none = [name for name, n in counts.items() if n == 0]
+    if none:
+        yield f"No use was recorded for {', '.join(none)}; there is no result for it."
+    fewest = [f"{name} ({n})" for name, n in counts.items() if 0 < n < FEWEST_UNITS]
+    if fewest:
+        yield f"No interval with fewer than {FEWEST_UNITS} {usage.unit}s: {', '.join(fewest)}."
+    few = [f"{name} ({n})" for name, n in counts.items() if FEWEST_UNITS <= n < FEW_UNITS]
+    if few:
+        yield (
+            f"Fewer than {FEW_UNITS} {usage.unit}s: {', '.join(few)}. Percentile intervals from so few may be too narrow."
+        )
+
+
+def _lost_draws(
+    usage: Usage, options: Options, estimates: Mapping[str, Estimate], coefficients: Coefficients | None
+) -> Iterator[str]:
+    every = {**estimates, **({"alpha": coefficients.alpha} if coefficients else {})}
+    undefined = {name: int(e.undefined.max()) for name, e in every.items() if e.undefined.any()}
+    if undefined:
+        name, most = max(undefined.items(), key=lambda item: item[1])
+        yield (
+            f"Some resamples hold no two different {usage.unit}s of a species, or none that share a zone, and give no "
+            f"value: up to {most} of {options.resamples} ({name}). They are left out of the intervals and counted."
+        )
+    clipped = {name: int(e.clipped.max()) for name, e in estimates.items() if e.clipped.any()}
+    if clipped:
+        name, most = max(clipped.items(), key=lambda item: item[1])
+        yield (
+            f"Sampling noise took some resamples outside the range an index can have: up to {most} of "
+            f"{options.resamples} ({name}). They are counted at the edge of the range."
+        )
+
+
+def _weightings_differ(
+    usage: Usage, options: Options, overlap: Mapping[str, Estimate], other: Floats | None
+) -> Iterator[str]:
+    if other is None:
+        return
+    pianka = overlap["pianka"]
+    for s, t in combinations(range(len(usage.species)), 2):
+        if other[s, t] < pianka.low[s, t] or other[s, t] > pianka.high[s, t]:
+            second = "each animal counting once" if options.weighting == "time" else "time pooled"
+            yield (
+                f"{usage.species[s]} and {usage.species[t]}: the weighting matters more than the interval tells. "
+                f"Pianka’s overlap is {pianka.value[s, t]:.2f} as set and {other[s, t]:.2f} with {second}."
+            )
+
+
+def _plug_in(breadth: Mapping[str, Estimate], overlap: Mapping[str, Estimate]) -> Iterator[str]:
+    names = [name for name in ("shannon", "schoener") if name in breadth or name in overlap]
+    if names:
+        yield (
+            f"Values of {' and '.join(names)} are pooled: with few animals they lean low, and so do their intervals. "
+            "Values from products leave out each animal’s product with itself and do not."
+        )
+
+
+def _no_capacity(usage: Usage, coefficients: Coefficients | None, capacity: Mapping[str, object]) -> Iterator[str]:
+    if coefficients is not None and sum(name in capacity for name in usage.species) < 2:
+        yield "Without K for two species there is no outcome; the coexistence window says for which K₁/K₂ both persist."
+
+
+def interval_rests_on(usage: Usage, options: Options) -> str:
+    """What every interval of an analysis rests on, in one line for captions and tables."""
+    counts = ", ".join(f"{name} {n}" for name, n in zip(usage.species, usage.unit_counts.tolist(), strict=True))
+    return (
+        f"{options.confidence:.0%} percentile intervals, {options.resamples} resamples of {usage.unit}s ({counts}), "
+        f"seed {options.seed}."
+    )

@@ -1,0 +1,295 @@
+"""The commands. Each parses, calls the library, prints and translates; heavy imports wait until a command needs them."""
+
+from __future__ import annotations
+
+import sys
+from pathlib import Path
+from typing import Annotated
+
+import typer
+
+from niche import __version__
+from niche.cli.console import Exit, errors_translated, progress, say
+from niche.cli.options import (
+    Chosen,
+    Format,
+    FormatOption,
+    OutFile,
+    OutFolder,
+    Quiet,
+    StudyPath,
+    with_settings,
+)
+
+app = typer.Typer(
+    help="From a log of which zone each animal used, when, to how species share the habitat: use, breadth, overlap, "
+    "competition coefficients, outcome, report. Each with how sure it is.",
+    epilog="Overlap is similarity of use, not competition. Have a qualified ecologist review results before decisions.",
+    add_completion=False,
+    no_args_is_help=True,
+    pretty_exceptions_enable=False,
+    rich_markup_mode=None,
+)
+
+
+def main() -> None:
+    """Entry point of the command ``niche``."""
+    app()
+
+
+def _version(asked: bool) -> None:
+    if asked:
+        typer.echo(f"niche {__version__}")
+        raise typer.Exit
+
+
+@app.callback()
+def _common(
+    version: Annotated[
+        bool, typer.Option("--version", callback=_version, is_eager=True, help="Print the version.")
+    ] = False,
+) -> None: ...
+
+
+@app.command()
+def start(directory: Annotated[Path, typer.Argument(metavar="DIR", help="New folder for the study.")]) -> None:
+    """Write a starter study: a commented study.toml, an empty log sheet and a zone sheet.
+
+    Example: niche start autumn_flat
+    """
+    from niche.study.starter import write_starter
+
+    with errors_translated():
+        for path in write_starter(directory):
+            typer.echo(path)
+        say(f"Fill in the sheets, then: niche check {directory}")
+
+
+@app.command()
+def check(study: StudyPath, form: FormatOption = Format.table, out: OutFile = None, quiet: Quiet = False) -> None:
+    """Read the logs and print the ledger and every problem with file, row, value and remedy. Computes nothing.
+
+    With --format csv or json the ledger itself is written. Exit status 1 if a problem stops the work.
+
+    Example: niche check sample_logs/spoiled
+    """
+    from niche.cli.checking import summary
+    from niche.cli.render import render, write
+    from niche.logs import open_study, read_logs
+
+    with errors_translated():
+        with progress("Reading logs", quiet) as report_progress:
+            log = read_logs(open_study(study), report_progress)
+        if form is Format.table:
+            write(summary(log), out)
+        else:
+            write(render(log.ledger.table(), "ledger", form), out)
+        if log.ledger.stops:
+            raise typer.Exit(Exit.STOPPED)
+
+
+def _table(
+    name: str,
+    study: Path,
+    form: Format,
+    out: Path | None,
+    quiet: bool,
+    chosen: Chosen,
+    indices: tuple[str, ...],
+) -> None:
+    """What the commands that print one table share."""
+    from niche.analysis import run_study
+    from niche.analysis.notes import interval_rests_on
+    from niche.cautions import BY_TABLE
+    from niche.cli.render import render, write
+    from niche.logs import open_study
+
+    with errors_translated():
+        set_study = chosen.put_into(open_study(study))
+        with progress("Resampling", quiet) as report_progress:
+            analysis = run_study(set_study, indices=indices, progress=report_progress).analysis
+        notes = (interval_rests_on(analysis.usage, analysis.options), *analysis.notes)
+        write(render(analysis.table(name), name, form, notes, BY_TABLE[name]), out)
+        for line in () if quiet else notes:
+            say(line)
+        for line in BY_TABLE[name]:
+            say(f"Caution: {line}")
+
+
+@app.command()
+@with_settings
+def usage(
+    study: StudyPath,
+    form: FormatOption = Format.table,
+    out: OutFile = None,
+    quiet: Quiet = False,
+    *,
+    chosen: Chosen,
+) -> None:
+    """Time by zone for each species, with intervals and core zones.
+
+    The core is the fewest zones, most used first, that hold at least half of the use: a display convention.
+
+    Example: niche usage sample_logs/tidal_flat
+    """
+    _table("usage", study, form, out, quiet, chosen, ())
+
+
+@app.command()
+@with_settings
+def breadth(
+    study: StudyPath,
+    form: FormatOption = Format.table,
+    out: OutFile = None,
+    quiet: Quiet = False,
+    *,
+    chosen: Chosen,
+) -> None:
+    """Niche breadth of each species, with intervals and pooled values.
+
+    Example: niche breadth sample_logs/tidal_flat --format csv
+    """
+    from niche.indices.catalogue import BREADTH
+
+    _table("breadth", study, form, out, quiet, chosen, tuple(BREADTH))
+
+
+@app.command()
+@with_settings
+def overlap(
+    study: StudyPath,
+    form: FormatOption = Format.table,
+    out: OutFile = None,
+    quiet: Quiet = False,
+    *,
+    chosen: Chosen,
+) -> None:
+    """Niche overlap of each pair of species, with intervals and pooled values.
+
+    Overlap is similarity of use. It is not competition.
+
+    Example: niche overlap sample_logs/tidal_flat --resamples 2000
+    """
+    from niche.indices.catalogue import OVERLAP
+
+    _table("overlap", study, form, out, quiet, chosen, tuple(OVERLAP))
+
+
+@app.command()
+@with_settings
+def compete(
+    study: StudyPath,
+    form: FormatOption = Format.table,
+    out: OutFile = None,
+    quiet: Quiet = False,
+    *,
+    chosen: Chosen,
+) -> None:
+    """Competition coefficients α, β that the overlap implies, and the range of K1/K2 in which both species persist.
+
+    They hold only where the resource is limiting, demand is as stated, and species compete through shared use alone.
+
+    Example: niche compete sample_logs/tidal_flat
+    """
+    _table("coefficients", study, form, out, quiet, chosen, ("alpha",))
+
+
+@app.command()
+@with_settings
+def outcome(
+    study: Annotated[Path | None, typer.Argument(metavar="STUDY", help="Study; or give all four numbers.")] = None,
+    alpha: Annotated[float | None, typer.Option(help="Effect of one of species 2 on species 1.")] = None,
+    beta: Annotated[float | None, typer.Option(help="Effect of one of species 1 on species 2.")] = None,
+    k1: Annotated[float | None, typer.Option(help="Carrying capacity of species 1.")] = None,
+    k2: Annotated[float | None, typer.Option(help="Carrying capacity of species 2.")] = None,
+    form: FormatOption = Format.table,
+    out: OutFile = None,
+    quiet: Quiet = False,
+    *,
+    chosen: Chosen,
+) -> None:
+    """Two-species Lotka–Volterra outcome: shares over resamples and ranges of K, or the case of four given numbers.
+
+    A scenario, not a forecast. Do not use it alone to justify control, removal or translocation.
+
+    Example: niche outcome sample_logs/tidal_flat
+
+    Example: niche outcome --alpha 0.6 --beta 0.4 --k1 900 --k2 700
+    """
+    numbers = (alpha, beta, k1, k2)
+    if study is None and all(number is None for number in numbers):
+        raise typer.BadParameter("give a STUDY, or --alpha, --beta, --k1 and --k2.")
+    if study is not None and any(number is not None for number in numbers):
+        raise typer.BadParameter("give either a STUDY or the four numbers, not both.")
+    if study is not None:
+        _table("outcome", study, form, out, quiet, chosen, ("alpha",))
+        return
+    if any(number is None for number in numbers):
+        raise typer.BadParameter("--alpha, --beta, --k1 and --k2 go together; one is missing.")
+    from niche.cautions import OUTCOME, REVIEW
+    from niche.cli.render import render, window_in_words, write
+    from niche.dynamics import outcome as decide
+    from niche.tables import outcome_of_numbers
+
+    with errors_translated():
+        result = decide(alpha=alpha, beta=beta, k1=k1, k2=k2)  # type: ignore[arg-type]
+        notes = (result.detail, window_in_words(result))
+        write(render(outcome_of_numbers(result), "outcome", form, notes, (OUTCOME, REVIEW)), out)
+        for line in () if quiet else notes:
+            say(line)
+        for line in (OUTCOME, REVIEW):
+            say(f"Caution: {line}")
+
+
+@app.command("map")
+@with_settings
+def draw_map(
+    study: StudyPath,
+    out: OutFolder = Path("maps"),
+    quiet: Quiet = False,
+    *,
+    chosen: Chosen,
+) -> None:
+    """Heatmaps of zone use on the layout of the zones, as PNG and SVG.
+
+    Example: niche map sample_logs/tidal_flat --out maps
+    """
+    _folder("maps", study, out, quiet, chosen)
+
+
+@app.command()
+@with_settings
+def report(
+    study: StudyPath,
+    out: OutFolder = Path("report"),
+    quiet: Quiet = False,
+    *,
+    chosen: Chosen,
+) -> None:
+    """Everything in one folder: a page to read, tables, figures, data package, run record.
+
+    Example: niche report sample_logs/tidal_flat --out report
+    """
+    _folder("report", study, out, quiet, chosen)
+
+
+def _folder(what: str, study: Path, out: Path, quiet: bool, chosen: Chosen) -> None:
+    """What the commands that write a folder share."""
+    import shlex
+
+    from niche.analysis import run_study
+    from niche.cautions import BY_TABLE
+    from niche.logs import open_study
+    from niche.report import write_maps, write_report
+
+    with errors_translated():
+        set_study = chosen.put_into(open_study(study))
+        with progress("Resampling", quiet) as report_progress:
+            run = run_study(set_study, progress=report_progress)
+        command = shlex.join(["niche", *sys.argv[1:]])
+        write_it = write_report if what == "report" else write_maps
+        typer.echo(write_it(run, out, command=command))
+        for line in () if quiet else run.analysis.notes:
+            say(line)
+        for line in dict.fromkeys((*BY_TABLE["usage"], *(BY_TABLE["outcome"] if what == "report" else ()))):
+            say(f"Caution: {line}")

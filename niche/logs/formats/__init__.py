@@ -1,0 +1,1 @@
+"""File forms: each module turns one form of file into pieces."""

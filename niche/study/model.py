@@ -1,0 +1,255 @@
+"""The study file: what was watched, where the logs are, how to read them, what to compute.
+
+A study is one TOML file. Every key is checked: an unknown key, a wrong type or a value outside its rule stops the work
+with the key's path, what was found and what is allowed. `docs/study_file.md` describes each key.
+"""
+
+from __future__ import annotations
+
+import math
+from collections import Counter
+from pathlib import Path
+from typing import Annotated, Literal, Self
+from zoneinfo import ZoneInfo
+
+from pydantic import BaseModel, ConfigDict, Field, field_validator, model_validator
+
+Positive = Annotated[float, Field(gt=0, allow_inf_nan=False)]
+Text = Annotated[str, Field(min_length=1)]
+Policy = Literal["stop", "set_aside"]
+
+STANDARD_COLUMNS = ("species", "animal", "session", "zone", "start", "end", "duration")
+
+
+class Section(BaseModel):
+    """A table of the study file: no key beyond those listed, no silent change of type, no change once read."""
+
+    model_config = ConfigDict(extra="forbid", frozen=True, strict=True)
+
+
+class Columns(Section):
+    """Heading in the log of each thing the program needs; a bout has an ``end`` or a ``duration``."""
+
+    species: Text = "species"
+    animal: Text | None = "animal"
+    session: Text | None = None
+    zone: Text = "zone"
+    start: Text = "start"
+    end: Text | None = None
+    duration: Text | None = None
+
+    @model_validator(mode="after")
+    def _one_way_to_end(self) -> Self:
+        if (self.end is None) == (self.duration is None):
+            raise ValueError("a bout ends by its `end` or its `duration` column: name one of the two")
+        return self
+
+
+class Policies(Section):
+    """What to do with rows that the program will not decide about by itself."""
+
+    unknown_zone: Policy = "stop"
+    unknown_species: Policy = "stop"
+    unreadable: Policy = "stop"
+    end_before_start: Policy = "stop"
+    overlap: Policy = "stop"
+
+
+class Logs(Section):
+    """Where the logs are and how to read them."""
+
+    files: Annotated[tuple[Text, ...], Field(min_length=1, strict=False)]
+    rule: Literal["bouts"] = "bouts"
+    columns: Columns
+    time_zone: Text | None = None
+    duration_unit: Literal["s", "min", "h"] = "s"
+    out_of_sight: Annotated[tuple[Text, ...], Field(strict=False)] = ()
+    problems: Policies = Policies()
+
+    @field_validator("time_zone")
+    @classmethod
+    def _known_time_zone(cls, name: str | None) -> str | None:
+        if name is not None:
+            try:
+                ZoneInfo(name)
+            except (KeyError, ValueError, OSError) as error:
+                raise ValueError("no such time zone; give an IANA name such as Europe/Berlin or Etc/GMT-1") from error
+        return name
+
+
+class Availability(Section):
+    """How much of the habitat each zone makes up, and how that is known."""
+
+    source: Text
+    unit: Text = "share"
+    amounts: dict[str, Annotated[float, Field(ge=0, allow_inf_nan=False)]]
+
+
+class Zones(Section):
+    """The zones, as a grid of names (top row first) or as a zone sheet: a CSV of zone, row, column, availability."""
+
+    rows: Annotated[tuple[Text, ...], Field(strict=False)] = ()
+    columns: Annotated[tuple[Text, ...], Field(strict=False)] = ()
+    layout: Annotated[tuple[Annotated[tuple[str, ...], Field(strict=False)], ...], Field(strict=False)] = ()
+    sheet: Text | None = None
+    availability: Availability | None = None
+    availability_source: Text | None = None
+
+    @model_validator(mode="after")
+    def _layout_fits(self) -> Self:
+        if bool(self.layout) == (self.sheet is not None):
+            raise ValueError("give the zones either as `layout` or as `sheet`, and not both")
+        if self.sheet is not None and (self.rows or self.columns or self.availability):
+            raise ValueError("with a zone sheet, rows, columns and availability stand in the sheet, not here")
+        if self.sheet is None and self.availability_source is not None:
+            raise ValueError("`availability_source` goes with a zone sheet; here use `zones.availability.source`")
+        if self.layout:
+            check_layout(self.rows, self.columns, self.layout)
+            if self.availability is not None:
+                check_amounts(self.names, self.availability.amounts)
+        return self
+
+    @property
+    def names(self) -> tuple[str, ...]:
+        """Zone names in the order of the layout, row by row."""
+        return tuple(zone for row in self.layout for zone in row if zone)
+
+
+def check_layout(rows: tuple[str, ...], columns: tuple[str, ...], layout: tuple[tuple[str, ...], ...]) -> None:
+    """Raise ValueError unless the layout is a full grid that names each zone once."""
+    if len(rows) != len(layout):
+        raise ValueError(f"the layout has {len(layout)} rows and `rows` names {len(rows)}; they must be as many")
+    for number, row in enumerate(layout, 1):
+        if len(row) != len(columns):
+            raise ValueError(
+                f"row {number} of the layout has {len(row)} cells and `columns` names {len(columns)}; "
+                'write "" where there is no zone'
+            )
+    names = [zone for row in layout for zone in row if zone]
+    if not names:
+        raise ValueError("the layout names no zone")
+    for zone in names:
+        if zone != " ".join(zone.split()):
+            raise ValueError(f"zone {zone!r} has spaces at an end or in a row; write single spaces")
+    twice = [zone for zone, times in Counter(zone.casefold() for zone in names).items() if times > 1]
+    if twice:
+        raise ValueError(f"zone {twice[0]!r} is named twice; each zone has one place and one name")
+
+
+def check_amounts(zones: tuple[str, ...], amounts: dict[str, float]) -> None:
+    """Raise ValueError unless every zone and nothing else has an amount, and one amount is above 0."""
+    strangers = [zone for zone in amounts if zone not in zones]
+    if strangers:
+        raise ValueError(f"availability names {strangers[0]!r}, which is no zone of the layout")
+    missing = [zone for zone in zones if zone not in amounts]
+    if missing:
+        raise ValueError(
+            f"availability has no amount for zone {missing[0]!r}; give one for each zone, 0 if there is none"
+        )
+    if not any(amounts.values()):
+        raise ValueError("all amounts of availability are 0; at least one must be above")
+
+
+class Capacity(Section):
+    """Carrying capacity K as a range with its source."""
+
+    low: Positive
+    high: Positive
+    source: Text
+    distribution: Literal["log-uniform", "uniform"] = "log-uniform"
+
+    @model_validator(mode="after")
+    def _low_first(self) -> Self:
+        if self.low > self.high:
+            raise ValueError(f"low is {self.low:g} and high is {self.high:g}; low must not be above high")
+        return self
+
+
+class Species(Section):
+    """One species; everything but its name is optional."""
+
+    name: Text
+    scientific_name: Text | None = None
+    body_mass: Positive | None = None
+    intake: Positive | None = None
+    k: Capacity | None = None
+    r: Positive | None = None
+    start: Positive | None = None
+
+
+class Settings(Section):
+    """What to compute and how."""
+
+    resamples: Annotated[int, Field(ge=100, le=1_000_000)] = 9999
+    confidence: Annotated[float, Field(gt=0.5, lt=1)] = 0.95
+    seed: Annotated[int, Field(ge=0)] = 1
+    unit: Literal["animal", "session"] = "animal"
+    weighting: Literal["time", "animal"] = "time"
+    core: Annotated[float, Field(gt=0, lt=1)] = 0.5
+    demand: Literal["intake", "body_mass", "equal"] | None = None
+    mass_exponent: Annotated[float, Field(gt=0, le=2)] = 0.75
+
+
+class ReportText(Section):
+    """What only people know: printed in the report as given."""
+
+    permits: str = ""
+    competent_person: str = ""
+    ethics: str = ""
+
+
+class Study(Section):
+    """A whole study file."""
+
+    title: Text
+    site: str = ""
+    note: str = ""
+    logs: Logs
+    zones: Zones
+    species: Annotated[tuple[Species, ...], Field(strict=False)] = ()
+    analysis: Settings = Settings()
+    report: ReportText = ReportText()
+
+    _folder: Path = Path()
+
+    @model_validator(mode="after")
+    def _names_are_unambiguous(self) -> Self:
+        twice = [name for name, times in Counter(s.name.casefold() for s in self.species).items() if times > 1]
+        if twice:
+            raise ValueError(f"species {twice[0]!r} is listed twice; each species has one table")
+        demand = self.analysis.demand
+        if demand in ("intake", "body_mass"):
+            without = [s.name for s in self.species if getattr(s, demand) is None]
+            if without or not self.species:
+                named = without[0] if without else "any species"
+                raise ValueError(f"analysis.demand is {demand!r}, but there is no `{demand}` for {named}")
+        return self
+
+    @property
+    def folder(self) -> Path:
+        """Folder of the study file; paths in the study are relative to it."""
+        return self._folder
+
+    def demand_basis(self) -> Literal["intake", "body_mass", "equal"]:
+        """What relative demand rests on: as set, else the best that every species has."""
+        if self.analysis.demand is not None:
+            return self.analysis.demand
+        bases: tuple[Literal["intake", "body_mass"], ...] = ("intake", "body_mass")
+        for basis in bases:
+            if self.species and all(getattr(s, basis) is not None for s in self.species):
+                return basis
+        return "equal"
+
+    def demand_of(self, name: str) -> float:
+        """Per-capita demand of a species, in the units of `demand_basis` (mass to the exponent for body mass).
+
+        Source of the exponent: Kleiber, M. (1932) Body size and metabolism. *Hilgardia* 6, 315–353.
+        """
+        basis = self.demand_basis()
+        found = next((s for s in self.species if s.name == name), None)
+        if basis == "equal" or found is None:
+            return 1.0
+        value = found.intake if basis == "intake" else found.body_mass
+        if value is None:
+            return math.nan
+        return value if basis == "intake" else value**self.analysis.mass_exponent
