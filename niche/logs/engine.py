@@ -12,7 +12,7 @@ import pandas as pd
 from niche.errors import LogError, StudyError
 from niche.logs.formats.csv_text import read_csv
 from niche.logs.ledger import Entry, Ledger
-from niche.logs.rules.bouts import Bouts
+from niche.logs.rules import RULES
 from niche.logs.visits import COLUMNS, without_overlaps, without_repeats
 from niche.study.model import Study
 
@@ -107,11 +107,11 @@ def read_logs(study: Study, progress: Progress | None = None) -> Log:
     paths = log_paths(study)
     sizes = [path.stat().st_size for path in paths]
     ledger, tables, files = Ledger(), [], []
+    rule = RULES[study.logs.rule](study, ledger)
     seen: dict[str, str] = {}
     for number, (path, size) in enumerate(zip(paths, sizes, strict=True)):
         name = _name(path, study.folder)
         digest = _sha256(path)
-        rule = Bouts(study, ledger)
         if digest in seen and size:
             _set_aside_copy(path, name, seen[digest], ledger)
         else:
@@ -120,6 +120,9 @@ def read_logs(study: Study, progress: Progress | None = None) -> Log:
         files.append(LogFile(name, digest, size, ledger.rows_read[name]))
         if progress is not None:
             progress(sum(sizes[: number + 1]), sum(sizes))
+    waiting = rule.finish()
+    if waiting is not None:
+        tables.append(waiting)
     visits = pd.concat(tables, ignore_index=True) if tables else pd.DataFrame(columns=COLUMNS)
     visits = without_repeats(visits, ledger)
     visits = without_overlaps(visits, ledger, study.logs.problems.overlap)

@@ -6,6 +6,7 @@ from typing import Any
 
 import numpy as np
 import pandas as pd
+from numpy.typing import NDArray
 
 from niche.logs.ledger import Action, Entry, Ledger
 
@@ -15,6 +16,33 @@ OUT_OF_SIGHT = ""
 KEY = ["species", "animal", "session", "zone", "start", "end"]
 COLUMNS = [*KEY, "file", "row"]
 """Start and end are milliseconds since 1970-01-01T00:00Z; a visit is the half-open ``[start, end)``."""
+
+
+def visits_table(
+    species: NDArray[np.object_],
+    animal: NDArray[np.object_],
+    session: NDArray[np.object_],
+    zone: NDArray[np.object_],
+    start: NDArray[np.int64],
+    end: NDArray[np.int64],
+    file: str | NDArray[np.object_],
+    row: NDArray[np.int64],
+    kept: NDArray[np.bool_] | slice = slice(None),
+) -> pd.DataFrame:
+    """The canonical table from columns of equal length, rows chosen by ``kept``."""
+    return pd.DataFrame(
+        {
+            "species": species[kept],
+            "animal": animal[kept],
+            "session": session[kept],
+            "zone": zone[kept],
+            "start": start[kept],
+            "end": end[kept],
+            "file": file if isinstance(file, str) else file[kept],
+            "row": row[kept],
+        },
+        columns=COLUMNS,
+    )
 
 
 def without_repeats(visits: pd.DataFrame, ledger: Ledger) -> pd.DataFrame:
