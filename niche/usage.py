@@ -138,7 +138,7 @@ class Usage:
         seen = visits[visits["zone"] != ""]
         place = {zone: number for number, zone in enumerate(zones)}
         column = seen["zone"].map(place).to_numpy(dtype=np.intp)
-        length = (seen["end"] - seen["start"]).to_numpy(dtype=np.int64)
+        amount = seen["amount"].to_numpy(dtype=np.int64)
         names, who = seen[unit].to_numpy(dtype=object), seen["species"].to_numpy(dtype=object)
         units, time, counts = [], [], []
         for name in species:
@@ -146,7 +146,7 @@ class Usage:
             labels, row = np.unique(names[mine].astype(str), return_inverse=True)
             tally = np.zeros((len(labels), len(zones)), dtype=np.int64)
             count = np.zeros_like(tally)
-            np.add.at(tally, (row, column[mine]), length[mine])
+            np.add.at(tally, (row, column[mine]), amount[mine])
             np.add.at(count, (row, column[mine]), 1)
             used = tally.sum(axis=1) > 0
             units.append(tuple(labels[used].tolist()))

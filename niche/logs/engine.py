@@ -125,7 +125,8 @@ def read_logs(study: Study, progress: Progress | None = None) -> Log:
         tables.append(waiting)
     visits = pd.concat(tables, ignore_index=True) if tables else pd.DataFrame(columns=COLUMNS)
     visits = without_repeats(visits, ledger)
-    visits = without_overlaps(visits, ledger, study.logs.problems.overlap)
+    if study.logs.measure == "time":
+        visits = without_overlaps(visits, ledger, study.logs.problems.overlap)
     ledger.close()
     return Log(visits, ledger, tuple(files))
 

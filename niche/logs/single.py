@@ -9,7 +9,8 @@ from niche.logs.formats.csv_text import read_csv
 from niche.logs.labels import Labels, key, tidy
 from niche.logs.ledger import Ledger
 from niche.study import Study, read_study
-from niche.study.model import STANDARD_COLUMNS, Columns, Logs, Settings, Zones
+from niche.study.log_model import STANDARD_COLUMNS, Columns, Logs
+from niche.study.model import Settings, Zones
 
 OUT_OF_SIGHT_LABEL = "out of sight"
 """The one label that a log without a study file may use for an animal that cannot be seen; a blank cell does too."""

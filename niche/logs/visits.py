@@ -14,8 +14,10 @@ OUT_OF_SIGHT = ""
 """Zone of a visit during which the animal could not be seen."""
 
 KEY = ["species", "animal", "session", "zone", "start", "end"]
-COLUMNS = [*KEY, "file", "row"]
-"""Start and end are milliseconds since 1970-01-01T00:00Z; a visit is the half-open ``[start, end)``."""
+COLUMNS = [*KEY, "amount", "file", "row"]
+"""Start and end are milliseconds since 1970-01-01T00:00Z; a visit is the half-open ``[start, end)``. ``amount`` is what
+the visit adds to the use of its zone: its milliseconds, or a number of scans, events or counts where time is not known
+(then start and end are the same)."""
 
 
 def visits_table(
@@ -28,8 +30,10 @@ def visits_table(
     file: str | NDArray[np.object_],
     row: NDArray[np.int64],
     kept: NDArray[np.bool_] | slice = slice(None),
+    *,
+    amount: NDArray[np.int64] | None = None,
 ) -> pd.DataFrame:
-    """The canonical table from columns of equal length, rows chosen by ``kept``."""
+    """The canonical table from columns of equal length, rows chosen by ``kept``; ``amount`` is the time by default."""
     return pd.DataFrame(
         {
             "species": species[kept],
@@ -38,6 +42,7 @@ def visits_table(
             "zone": zone[kept],
             "start": start[kept],
             "end": end[kept],
+            "amount": (end - start if amount is None else amount)[kept],
             "file": file if isinstance(file, str) else file[kept],
             "row": row[kept],
         },
@@ -58,7 +63,7 @@ def without_repeats(visits: pd.DataFrame, ledger: Ledger) -> pd.DataFrame:
     return visits[~repeated]
 
 
-def without_overlaps(visits: pd.DataFrame, ledger: Ledger, action: Action) -> pd.DataFrame:
+def without_overlaps(visits: pd.DataFrame, ledger: Ledger, policy: str) -> pd.DataFrame:
     """Take out bouts in which an animal is already in another zone.
 
     Sorted by start, a bout overlaps if it starts before the running maximum of the earlier ends: comparing with the row
@@ -85,7 +90,13 @@ def without_overlaps(visits: pd.DataFrame, ledger: Ledger, action: Action) -> pd
             f"({other.file}, row {other.row}); correct one of the two times, or set "
             '`logs.problems.overlap` to "set_aside"'
         )
-        _move(ledger, row, "overlaps another bout of the same animal", problem, action)
+        _move(
+            ledger,
+            row,
+            "overlaps another bout of the same animal",
+            problem,
+            "stop" if policy == "stop" else "set_aside",
+        )
     return visits.drop(index=ordered.index[clash])
 
 

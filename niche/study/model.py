@@ -10,71 +10,11 @@ import math
 from collections import Counter
 from pathlib import Path
 from typing import Annotated, Literal, Self
-from zoneinfo import ZoneInfo
 
-from pydantic import BaseModel, ConfigDict, Field, field_validator, model_validator
+from pydantic import Field, model_validator
 
-Positive = Annotated[float, Field(gt=0, allow_inf_nan=False)]
-Text = Annotated[str, Field(min_length=1)]
-Policy = Literal["stop", "set_aside"]
-
-STANDARD_COLUMNS = ("species", "animal", "session", "zone", "start", "end", "duration")
-
-
-class Section(BaseModel):
-    """A table of the study file: no key beyond those listed, no silent change of type, no change once read."""
-
-    model_config = ConfigDict(extra="forbid", frozen=True, strict=True)
-
-
-class Columns(Section):
-    """Heading in the log of each thing the program needs; a bout has an ``end`` or a ``duration``."""
-
-    species: Text = "species"
-    animal: Text | None = "animal"
-    session: Text | None = None
-    zone: Text = "zone"
-    start: Text = "start"
-    end: Text | None = None
-    duration: Text | None = None
-
-    @model_validator(mode="after")
-    def _one_way_to_end(self) -> Self:
-        if (self.end is None) == (self.duration is None):
-            raise ValueError("a bout ends by its `end` or its `duration` column: name one of the two")
-        return self
-
-
-class Policies(Section):
-    """What to do with rows that the program will not decide about by itself."""
-
-    unknown_zone: Policy = "stop"
-    unknown_species: Policy = "stop"
-    unreadable: Policy = "stop"
-    end_before_start: Policy = "stop"
-    overlap: Policy = "stop"
-
-
-class Logs(Section):
-    """Where the logs are and how to read them."""
-
-    files: Annotated[tuple[Text, ...], Field(min_length=1, strict=False)]
-    rule: Literal["bouts"] = "bouts"
-    columns: Columns
-    time_zone: Text | None = None
-    duration_unit: Literal["s", "min", "h"] = "s"
-    out_of_sight: Annotated[tuple[Text, ...], Field(strict=False)] = ()
-    problems: Policies = Policies()
-
-    @field_validator("time_zone")
-    @classmethod
-    def _known_time_zone(cls, name: str | None) -> str | None:
-        if name is not None:
-            try:
-                ZoneInfo(name)
-            except (KeyError, ValueError, OSError) as error:
-                raise ValueError("no such time zone; give an IANA name such as Europe/Berlin or Etc/GMT-1") from error
-        return name
+from niche.study.log_model import Logs
+from niche.study.section import Positive, Section, Text
 
 
 class Availability(Section):
@@ -94,6 +34,10 @@ class Zones(Section):
     sheet: Text | None = None
     availability: Availability | None = None
     availability_source: Text | None = None
+    effort: dict[str, Annotated[float, Field(ge=0, allow_inf_nan=False)]] | None = None
+    """Hours that each zone was looked at, where they differ; 0 for a zone that was not looked at."""
+    same_across_sites: bool | None = None
+    """Whether a zone label means the same zone at every site; asked for where sites share labels."""
 
     @model_validator(mode="after")
     def _layout_fits(self) -> Self:
