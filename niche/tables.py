@@ -17,11 +17,14 @@ if TYPE_CHECKING:
 
 Row = tuple[Any, ...]
 
+_NUMBERS = ("scans", "events", "counts", "occurrences")
+"""Measures that are numbers of something."""
+
 _FORMULA = ("=", "+", "-", "@", "\t", "\r")
 """A cell that begins so is a formula to a spreadsheet."""
 
 COLUMNS: dict[str, tuple[str, ...]] = {
-    "usage": ("species", "zone", "seconds", "proportion", "low", "high", "units", "core"),
+    "usage": ("species", "zone", "seconds", "proportion", "low", "high", "units", "core", "visits"),
     "breadth": ("species", "index", "estimate", "low", "high", "pooled", "units", "undefined"),
     "overlap": (
         "species_1",
@@ -58,7 +61,7 @@ DESCRIPTIONS: dict[str, str] = {
     "species_1": "First species of the pair.",
     "species_2": "Second species of the pair.",
     "zone": "Zone of the habitat.",
-    "seconds": "Time in the zone, in seconds, all animals together.",
+    "seconds": "Time in the zone, in seconds, all animals together; empty where use is not measured in time.",
     "proportion": "Share of the species' use that falls in the zone, 0 to 1, by the weighting set.",
     "low": "Lower end of the interval; empty with fewer than 3 sampling units.",
     "high": "Upper end of the interval; empty with fewer than 3 sampling units.",
@@ -66,6 +69,7 @@ DESCRIPTIONS: dict[str, str] = {
     "units_1": "Sampling units of species 1 that were resampled.",
     "units_2": "Sampling units of species 2 that were resampled.",
     "core": "Whether the zone is among the fewest that hold at least the core share of use (a display convention).",
+    "visits": "Number of visits to the zone; of scans, events or animals counted where those are what use is measured in.",
     "index": "Name of the index.",
     "estimate": "The estimate; from products between different units where the index allows.",
     "pooled": "The textbook value from pooled use.",
@@ -108,7 +112,12 @@ def table(analysis: Analysis, name: str) -> pd.DataFrame:
         raise ValueRuleError(f"no table {name!r}; there are {', '.join(_ROWS)}.")
     frame = pd.DataFrame(list(_ROWS[name](analysis)), columns=list(COLUMNS[name]))
     whole = [c for c in ("units", "units_1", "units_2", "undefined", "clipped", "resamples") if c in frame]
-    return frame.astype(dict.fromkeys(whole, "int64"))
+    frame = frame.astype(dict.fromkeys(whole, "int64"))
+    if "visits" in frame:  # empty where only amounts are known
+        frame["visits"] = (
+            frame["visits"].astype("Float64").astype("Int64" if _all_whole(frame["visits"]) else "Float64")
+        )
+    return frame
 
 
 def outcome_of_numbers(result: TwoSpecies) -> pd.DataFrame:
@@ -126,6 +135,10 @@ def csv_text(frame: pd.DataFrame) -> str:
     return safe.to_csv(index=False, lineterminator="\n")
 
 
+def _all_whole(column: pd.Series[Any]) -> bool:
+    return bool((column.dropna().astype("float64") % 1 == 0).all())
+
+
 def _pairs(analysis: Analysis) -> Iterator[tuple[int, int, str, str]]:
     for (s, first), (t, second) in combinations(enumerate(analysis.usage.species), 2):
         yield s, t, first, second
@@ -137,10 +150,15 @@ def _usage(analysis: Analysis) -> Iterator[Row]:
         amount = usage.time[s].sum(axis=0)
         # Milliseconds are whole numbers; amounts given from outside are shown as given.
         seconds = amount / 1000 if np.issubdtype(usage.time[s].dtype, np.integer) else amount
+        counted = usage.visits[s].sum(axis=0) if usage.visits is not None else np.full(len(usage.zones), np.nan)
+        if usage.measure != "time":
+            seconds = np.full(len(usage.zones), np.nan)
+        if usage.measure in _NUMBERS:
+            counted = amount
         p = use.proportion
         for z, zone in enumerate(usage.zones):
             interval = (p.value[s, z], p.low[s, z], p.high[s, z])
-            yield (species, zone, seconds[z], *interval, len(usage.units[s]), use.core[s, z])
+            yield (species, zone, seconds[z], *interval, len(usage.units[s]), use.core[s, z], counted[z])
 
 
 def _breadth(analysis: Analysis) -> Iterator[Row]:

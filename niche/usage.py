@@ -1,4 +1,4 @@
-"""Usage: time in each zone by sampling unit and species, the whole of what the numeric side needs to know.
+"""Usage: use of each zone by sampling unit and species, the whole of what the numeric side needs to know.
 
 A Usage is a sum. Two Usages over the same zones add, unit by unit, so a log can be tallied in pieces of any size.
 """
@@ -6,20 +6,24 @@ A Usage is a sum. Two Usages over the same zones add, unit by unit, so a log can
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Literal
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from niche.amounts import checked, same, shares, study_availability, study_effort
 from niche.errors import StudyError, ValueRuleError
 
 if TYPE_CHECKING:
     import pandas as pd
 
+    from niche.study.log_model import Measure
     from niche.study.model import Study
 
 Unit = Literal["animal", "session"]
+Zero = Literal["", "not looked at", "not there", "not used"]
+"""Why a species has no use of a zone; empty text where it has."""
 
 
 @dataclass(frozen=True)
@@ -34,13 +38,21 @@ class Usage:
     units : tuple of S tuples of str
         Names of the sampling units of each species, sorted.
     time : tuple of S arrays, each (U_s, Z)
-        Milliseconds in each zone (whole numbers), or whatever amounts were given to `from_units`.
+        Milliseconds in each zone (whole numbers) or numbers of what ``measure`` says, or whatever amounts were given to
+        `from_units`. Never divided by effort: see `use`.
     visits : tuple of S arrays, each (U_s, Z), or None
         Number of visits; None where only amounts are known.
     unit : {"animal", "session"}
         What a sampling unit is.
     availability : array, shape (Z,), or None
         Share of the habitat that each zone makes up; sums to 1.
+    effort : array, shape (Z,), or None
+        Hours that each zone was looked at, 0 for one that was not, NaN where hours are not known; None where all were
+        looked at alike.
+    measure : {"time", "scans", "events", "counts", "percent", "occurrences"}
+        What ``time`` holds.
+    by_effort : bool
+        Whether `use` is ``time`` divided by effort.
     """
 
     species: tuple[str, ...]
@@ -50,6 +62,9 @@ class Usage:
     visits: tuple[NDArray[np.number], ...] | None = None
     unit: Unit = "animal"
     availability: NDArray[np.float64] | None = None
+    effort: NDArray[np.float64] | None = None
+    measure: Measure = "time"
+    by_effort: bool = False
 
     @classmethod
     def from_units(
@@ -60,6 +75,9 @@ class Usage:
         visits: Mapping[str, ArrayLike] | None = None,
         unit: Unit = "animal",
         availability: ArrayLike | None = None,
+        effort: ArrayLike | None = None,
+        measure: Measure = "time",
+        by_effort: bool = False,
     ) -> Usage:
         """Usage from arrays, without files.
 
@@ -73,6 +91,12 @@ class Usage:
         unit : {"animal", "session"}
         availability : array_like, shape (zones,), optional
             Amounts, of which the shares are taken.
+        effort : array_like, shape (zones,), optional
+            Hours that each zone was looked at; a zone with 0 must have no use.
+        measure : str
+            What the numbers of use are.
+        by_effort : bool
+            Whether proportions are of use divided by effort.
 
         Raises
         ------
@@ -92,7 +116,7 @@ class Usage:
             raise ValueRuleError("use names no species; give at least one.")
         time, counts, labels = [], [], []
         for species, given in use.items():
-            amounts = _checked(given, species, "use", len(names))
+            amounts = checked(given, species, "use", len(names))
             seen = amounts.sum(axis=1) > 0
             time.append(amounts[seen])
             labels.append(tuple(str(i + 1) for i in np.flatnonzero(seen)))
@@ -101,19 +125,32 @@ class Usage:
                     raise ValueRuleError(
                         f"visits has no counts for {species!r}; give them for every species or for none."
                     )
-                count = _checked(visits[species], species, "visits", len(names))
+                count = checked(visits[species], species, "visits", len(names))
                 if count.shape != amounts.shape:
                     raise ValueRuleError(f"visits of {species!r} has shape {count.shape}; use has {amounts.shape}.")
                 counts.append(count[seen])
-        shares = None
+        share = None
         if availability is not None:
-            shares = _shares(_checked(np.asarray(availability)[None], "availability", "availability", len(names))[0])
-        return cls(
-            tuple(use), names, tuple(labels), tuple(time), tuple(counts) if visits is not None else None, unit, shares
+            share = shares(checked(np.asarray(availability)[None], "availability", "availability", len(names))[0])
+        hours = None if effort is None else checked(np.asarray(effort)[None], "effort", "effort", len(names))[0]
+        usage = cls(
+            tuple(use),
+            names,
+            tuple(labels),
+            tuple(time),
+            tuple(counts) if visits is not None else None,
+            unit,
+            share,
+            hours,
+            measure,
+            by_effort,
         )
+        if (contradiction := usage._used_unseen()) is not None:
+            raise ValueRuleError(contradiction)
+        return usage
 
     @classmethod
-    def from_visits(cls, visits: pd.DataFrame, study: Study) -> Usage:
+    def from_visits(cls, visits: pd.DataFrame, study: Study, looked_at: Mapping[str, bool] | None = None) -> Usage:
         """Tally visits.
 
         Parameters
@@ -121,21 +158,29 @@ class Usage:
         visits : DataFrame
             Columns of `niche.logs.visits.COLUMNS`; visits out of sight are not tallied.
         study : Study
-            Gives the species and zones with their order, the unit and the availability.
+            Gives the species and zones with their order, the unit, the availability and the effort.
+        looked_at : mapping of zone to bool, optional
+            Zones that the logs cannot have missed, from `niche.logs.effort_by_zone`, where the study gives no effort.
 
         Raises
         ------
         StudyError
-            The unit is ``session`` and the study names no column for it.
+            The unit is ``session`` and the study names no column for it, or a zone with use was not looked at.
+        ValueRuleError
+            A visit is in a zone, or of a species, that the study does not have.
         """
         unit = study.analysis.unit
-        if getattr(study.logs.columns, unit) is None:
+        if not study.logs.tells(unit):
             raise StudyError(
                 f"analysis.unit is {unit!r}, and logs.columns names no {unit} column; name it, or choose the other unit."
             )
         zones = study.zones.names
         species = tuple(s.name for s in study.species) or tuple(sorted(visits["species"].unique()))
         seen = visits[visits["zone"] != ""]
+        for what, known in (("zone", zones), ("species", species)):
+            strangers = sorted(set(seen[what].unique()) - set(known))
+            if strangers:  # a look-up would drop them, and their time with them
+                raise ValueRuleError(f"visits hold {what} {strangers[0]!r}, which the study does not have.")
         place = {zone: number for number, zone in enumerate(zones)}
         column = seen["zone"].map(place).to_numpy(dtype=np.intp)
         amount = seen["amount"].to_numpy(dtype=np.int64)
@@ -152,12 +197,31 @@ class Usage:
             units.append(tuple(labels[used].tolist()))
             time.append(tally[used])
             counts.append(count[used])
-        return cls(species, zones, tuple(units), tuple(time), tuple(counts), unit, study_availability(study))
+        effort = study_effort(study, looked_at)
+        usage = cls(
+            species,
+            zones,
+            tuple(units),
+            tuple(time),
+            tuple(counts),
+            unit,
+            study_availability(study),
+            effort,
+            study.logs.measure,
+            study.analysis.effort == "divide",
+        )
+        if (contradiction := usage._used_unseen()) is not None:
+            raise StudyError(f"zones.effort: {contradiction}")
+        return usage
 
     def __add__(self, other: Usage) -> Usage:
         """Sum of two Usages over the same species and zones: units of the same name are added."""
         if (self.species, self.zones, self.unit) != (other.species, other.zones, other.unit):
             raise ValueRuleError("Usages add only over the same species, zones and unit.")
+        if self.measure != other.measure:
+            raise ValueRuleError(f"{self.measure} and {other.measure} do not add.")
+        if self.by_effort != other.by_effort or not same(self.effort, other.effort):
+            raise ValueRuleError("Usages add only with the same effort; give the effort of all logs together to both.")
         if (self.visits is None) != (other.visits is None):
             raise ValueRuleError("Usages add only if both or neither count visits.")
         units: list[tuple[str, ...]] = []
@@ -175,42 +239,60 @@ class Usage:
                 total[[row[name] for name in self.units[s]]] += mine
                 total[[row[name] for name in other.units[s]]] += theirs
                 gathered.append(total)
-        return Usage(
-            self.species,
-            self.zones,
-            tuple(units),
-            tuple(time),
-            tuple(counts) if self.visits is not None else None,
-            self.unit,
-            self.availability,
+        return replace(
+            self, units=tuple(units), time=tuple(time), visits=tuple(counts) if self.visits is not None else None
         )
+
+    @property
+    def use(self) -> tuple[NDArray[np.number], ...]:
+        """What proportions are taken of: S arrays, each (U_s, Z).
+
+        That is ``time``, or where ``by_effort`` is set ``time`` divided by effort, which is scaled to a mean of 1 over
+        the zones looked at. A zone that was not looked at has no use.
+        """
+        if not self.by_effort or self.effort is None:
+            return self.time
+        looked = self.effort > 0
+        scale = np.where(looked, self.effort, 1.0) / self.effort[looked].mean()
+        return tuple(np.where(looked, amount / scale, 0.0) for amount in self.time)
+
+    def zeros(self) -> NDArray[np.object_]:
+        """The three kinds of zero: why a species has no use of a zone.
+
+        Returns
+        -------
+        array of str, shape (S, Z)
+            ``"not looked at"`` where effort is 0, else ``"not there"`` where availability is 0, else ``"not used"``; empty
+            text where there is use.
+
+        Examples
+        --------
+        >>> usage = Usage.from_units({"dunlin": [[3, 0, 0]]}, zones=["mud", "sand", "creek"], effort=[2, 2, 0])
+        >>> usage.zeros().tolist()
+        [['', 'not used', 'not looked at']]
+        """
+        kinds = np.full((len(self.species), len(self.zones)), "", dtype=object)
+        for s, amount in enumerate(self.time):
+            unused = np.asarray(amount.sum(axis=0) == 0)
+            kinds[s, unused] = "not used"
+            if self.availability is not None:
+                kinds[s, unused & (self.availability == 0)] = "not there"
+            if self.effort is not None:
+                kinds[s, unused & (self.effort == 0)] = "not looked at"
+        return kinds
+
+    def _used_unseen(self) -> str | None:
+        """Words on a zone that has use and was not looked at."""
+        if self.effort is None:
+            return None
+        total = np.sum([amount.sum(axis=0) for amount in self.time], axis=0)
+        wrong = np.flatnonzero((self.effort == 0) & (total > 0))
+        if not len(wrong):
+            return None
+        zone = self.zones[int(wrong[0])]
+        return f"zone {zone!r} has use and 0 hours; a zone that was not looked at has no use. Correct its hours."
 
     @property
     def unit_counts(self) -> NDArray[np.int64]:
         """Number of sampling units of each species, shape (S,)."""
         return np.array([len(names) for names in self.units], dtype=np.int64)
-
-
-def study_availability(study: Study) -> NDArray[np.float64] | None:
-    """Availability of the study's zones as shares, in the order of the layout."""
-    given = study.zones.availability
-    if given is None:
-        return None
-    return _shares(np.array([given.amounts[zone] for zone in study.zones.names]))
-
-
-def _shares(amounts: NDArray[np.float64]) -> NDArray[np.float64]:
-    if amounts.sum() <= 0:
-        raise ValueRuleError("availability adds up to 0; at least one zone must be available.")
-    return np.asarray(amounts / amounts.sum())
-
-
-def _checked(given: ArrayLike, species: str, what: str, zones: int) -> NDArray[np.float64]:
-    """Amounts as a (units, zones) array of finite numbers at least 0."""
-    amounts = np.array(given, dtype=np.float64)
-    if amounts.ndim != 2 or amounts.shape[1] != zones:
-        raise ValueRuleError(f"{what} of {species!r} has shape {amounts.shape}; it must be (units, {zones}).")
-    if not np.isfinite(amounts).all() or (amounts < 0).any():
-        worst = amounts[~(np.isfinite(amounts) & (amounts >= 0))][0]
-        raise ValueRuleError(f"{what} of {species!r} holds {worst}; amounts must be finite and at least 0.")
-    return amounts

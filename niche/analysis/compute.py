@@ -144,7 +144,7 @@ class _Material:
 
     @classmethod
     def of(cls, usage: Usage, weighting: Weighting) -> _Material:
-        time = [np.asarray(t, dtype=np.float64) for t in usage.time]
+        time = [np.asarray(t, dtype=np.float64) for t in usage.use]
         if weighting == "animal":
             time = [t / t.sum(axis=1, keepdims=True) for t in time]
         visits = None if usage.visits is None else [np.asarray(v, dtype=np.float64) for v in usage.visits]

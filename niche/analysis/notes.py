@@ -30,6 +30,7 @@ def notes_on(
         *_weightings_differ(usage, options, overlap, other_weighting),
         *_plug_in(breadth, overlap),
         *_no_capacity(usage, coefficients, capacity),
+        *_effort(usage),
     )
 
 
@@ -95,6 +96,25 @@ def _plug_in(breadth: Mapping[str, Estimate], overlap: Mapping[str, Estimate]) -
 def _no_capacity(usage: Usage, coefficients: Coefficients | None, capacity: Mapping[str, object]) -> Iterator[str]:
     if coefficients is not None and sum(name in capacity for name in usage.species) < 2:
         yield "Without K for two species there is no outcome; the coexistence window says for which K₁/K₂ both persist."
+
+
+def _effort(usage: Usage) -> Iterator[str]:
+    if usage.effort is None:
+        return
+    unseen = [zone for zone, hours in zip(usage.zones, usage.effort.tolist(), strict=True) if hours == 0]
+    if unseen:
+        yield f"Not looked at: {', '.join(unseen)}. That no use is known there says nothing about the animals."
+    hours = usage.effort[usage.effort > 0]
+    if not len(hours):  # the logs tell which zones were looked at, and not for how long
+        return
+    span = f"zones were looked at for {hours.min():g} to {hours.max():g} hours"
+    if usage.by_effort:
+        yield f"Proportions are of use divided by effort: {span}. The amounts in the table of use are as logged."
+    elif hours.min() < hours.max():
+        yield (
+            f"The {span}, and use is not divided by it: a zone watched longer shows more use. "
+            'Set `analysis.effort = "divide"` where use was seen by zone and not by following animals.'
+        )
 
 
 def interval_rests_on(usage: Usage, options: Options) -> str:

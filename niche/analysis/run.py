@@ -44,7 +44,7 @@ def run_study(
     """
     log = read_logs(study)
     log.require_usable()
-    usage = Usage.from_visits(log.visits, study)
+    usage = Usage.from_visits(log.visits, study, log.looked_at)
     settings = study.analysis
     analysis = analyse(
         usage,

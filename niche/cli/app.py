@@ -66,12 +66,24 @@ def start(directory: Annotated[Path, typer.Argument(metavar="DIR", help="New fol
 
 
 @app.command()
-def check(study: StudyPath, form: FormatOption = Format.table, out: OutFile = None, quiet: Quiet = False) -> None:
+def check(
+    study: StudyPath,
+    form: FormatOption = Format.table,
+    out: OutFile = None,
+    clean: Annotated[
+        Path | None,
+        typer.Option("--clean", metavar="DIR", help="Save the cleaned visits there, as a Data Package with a study."),
+    ] = None,
+    quiet: Quiet = False,
+) -> None:
     """Read the logs and print the ledger and every problem with file, row, value and remedy. Computes nothing.
 
-    With --format csv or json the ledger itself is written. Exit status 1 if a problem stops the work.
+    With --format csv or json the ledger itself is written. Exit status 1 if a problem stops the work; then --clean saves
+    nothing.
 
     Example: niche check sample_logs/spoiled
+
+    Example: niche check sample_logs/tidal_flat --clean cleaned
     """
     from niche.cli.checking import summary
     from niche.cli.render import render, write
@@ -79,13 +91,20 @@ def check(study: StudyPath, form: FormatOption = Format.table, out: OutFile = No
 
     with errors_translated():
         with progress("Reading logs", quiet) as report_progress:
-            log = read_logs(open_study(study), report_progress)
+            opened = open_study(study)
+            log = read_logs(opened, report_progress)
         if form is Format.table:
             write(summary(log), out)
         else:
             write(render(log.ledger.table(), "ledger", form), out)
         if log.ledger.stops:
+            if clean is not None:
+                say(f"niche: {clean}: nothing is saved, because problems stop the work.")
             raise typer.Exit(Exit.STOPPED)
+        if clean is not None:
+            from niche.logs.clean import write_clean
+
+            say(f"Saved: {write_clean(log, opened, clean)}")
 
 
 def _table(

@@ -56,7 +56,7 @@ def _problems(log: Log) -> Iterator[str]:
         found = True
         yield f"{heading} ({len(entries)})"
         for entry in entries:
-            place = f"{entry.file}, row {entry.row}: "
+            place = f"{entry.file}: " if entry.row is None else f"{entry.file}, row {entry.row}: "
             what = f"{entry.field} {entry.value!r}: " if entry.field else (f"{entry.value!r}: " if entry.value else "")
             yield f"  {place}{what}{entry.problem}"
         yield ""

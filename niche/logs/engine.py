@@ -10,10 +10,14 @@ from pathlib import Path
 import pandas as pd
 
 from niche.errors import LogError, StudyError
-from niche.logs.formats.csv_text import read_csv
+from niche.logs.effort_by_zone import effort_by_zone
+from niche.logs.formats import DatabaseLog, open_pieces
 from niche.logs.ledger import Entry, Ledger
 from niche.logs.rules import RULES
-from niche.logs.visits import COLUMNS, without_overlaps, without_repeats
+from niche.logs.rules.one_zero import REFUSAL
+from niche.logs.standards import parts_of
+from niche.logs.visits import COLUMNS, Beside, compared
+from niche.study.log_model import Measure
 from niche.study.model import Study
 
 Progress = Callable[[int, int], None]
@@ -39,6 +43,15 @@ class Log:
     visits: pd.DataFrame
     ledger: Ledger
     files: tuple[LogFile, ...]
+    measure: Measure = "time"
+    """What the visits' ``amount`` is."""
+    effort: pd.DataFrame | None = None
+    """Effort by zone (`niche.logs.effort_by_zone`); None where the logs do not tell."""
+
+    @property
+    def looked_at(self) -> dict[str, bool] | None:
+        """Whether each zone was looked at, as far as the logs tell."""
+        return None if self.effort is None else dict(zip(self.effort["zone"], self.effort["looked_at"], strict=True))
 
     def require_usable(self) -> None:
         """Raise unless every problem has been dealt with and there is something to compute.
@@ -46,8 +59,10 @@ class Log:
         Raises
         ------
         LogError
-            Rows stop the work, or no row tells where an animal was.
+            Rows stop the work, no row tells where an animal was, or rows tell of occurrence alone.
         """
+        if self.measure == "occurrences":
+            raise LogError(REFUSAL)
         stops = self.ledger.stops
         if stops:
             shown = [f"{e.file}, row {e.row}: {e.field or 'row'} {e.value!r}: {e.problem}." for e in stops[:_SHOWN]]
@@ -107,28 +122,34 @@ def read_logs(study: Study, progress: Progress | None = None) -> Log:
     paths = log_paths(study)
     sizes = [path.stat().st_size for path in paths]
     ledger, tables, files = Ledger(), [], []
-    rule = RULES[study.logs.rule](study, ledger)
+    rule, beside = RULES[study.logs.rule](study, ledger), Beside(study)
     seen: dict[str, str] = {}
     for number, (path, size) in enumerate(zip(paths, sizes, strict=True)):
         name = _name(path, study.folder)
-        digest = _sha256(path)
+        digest, before = _sha256(path, *parts_of(path, name, study)), ledger.rows_read.total()
         if digest in seen and size:
-            _set_aside_copy(path, name, seen[digest], ledger)
+            _set_aside_copy(path, name, seen[digest], study, ledger)
         else:
-            tables += [rule.visits(piece) for piece in read_csv(path, name, ledger)]
+            for piece in open_pieces(path, name, study, ledger):
+                tables.append(rule.visits(piece))
+                beside.note(piece)
         seen.setdefault(digest, name)
-        files.append(LogFile(name, digest, size, ledger.rows_read[name]))
+        files.append(LogFile(name, digest, size, ledger.rows_read.total() - before))
         if progress is not None:
             progress(sum(sizes[: number + 1]), sum(sizes))
+    if study.logs.file.database is not None:
+        database = DatabaseLog(study)
+        for piece in database.pieces(ledger):
+            tables.append(rule.visits(piece))
+            beside.note(piece)
+        files.append(LogFile(database.name, database.sha256, 0, ledger.rows_read[database.name]))
     waiting = rule.finish()
     if waiting is not None:
         tables.append(waiting)
     visits = pd.concat(tables, ignore_index=True) if tables else pd.DataFrame(columns=COLUMNS)
-    visits = without_repeats(visits, ledger)
-    if study.logs.measure == "time":
-        visits = without_overlaps(visits, ledger, study.logs.problems.overlap)
+    visits = compared(visits, study, ledger, beside)
     ledger.close()
-    return Log(visits, ledger, tuple(files))
+    return Log(visits, ledger, tuple(files), study.logs.measure, effort_by_zone(study, rule))
 
 
 def _name(path: Path, folder: Path) -> str:
@@ -139,18 +160,23 @@ def _name(path: Path, folder: Path) -> str:
         return path.as_posix()
 
 
-def _sha256(path: Path) -> str:
-    try:
-        with path.open("rb") as stream:
-            return hashlib.file_digest(stream, "sha256").hexdigest()
-    except OSError as error:
-        raise LogError(f"{path}: cannot be read ({error.strerror}).") from None
+def _sha256(*paths: Path) -> str:
+    """Digest of a file, or of the files of a package one after the other."""
+    digest = hashlib.sha256()
+    for path in paths:
+        try:
+            with path.open("rb") as stream:
+                while block := stream.read(1 << 20):
+                    digest.update(block)
+        except OSError as error:
+            raise LogError(f"{path}: cannot be read ({error.strerror}).") from None
+    return digest.hexdigest()
 
 
-def _set_aside_copy(path: Path, name: str, original: str, ledger: Ledger) -> None:
+def _set_aside_copy(path: Path, name: str, original: str, study: Study, ledger: Ledger) -> None:
     """A file whose every byte repeats another file's adds nothing but rows to account for."""
-    for piece in read_csv(path, name, ledger):
-        ledger.come_in(name, len(piece.rows))
+    for piece in open_pieces(path, name, study, ledger):
+        ledger.come_in(piece.file, len(piece.rows))
         for row in piece.rows.tolist():
             problem = f"the file repeats {original} byte for byte"
-            ledger.dispose([Entry(name, row, "", "", "copy of another file", problem, "set_aside")])
+            ledger.dispose([Entry(piece.file, row, "", "", "copy of another file", problem, "set_aside")])

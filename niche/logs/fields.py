@@ -7,21 +7,27 @@ back for a row with a problem means nothing.
 from __future__ import annotations
 
 import numpy as np
-import pyarrow as pa
-import pyarrow.compute as pc
 from numpy.typing import NDArray
 
 from niche.errors import LogError
-from niche.logs.clocks import UNREADABLE, read_times
-from niche.logs.labels import Labels, key, listing, propose, tidy
+from niche.logs import mangled
+from niche.logs.characters import hidden, holding, look_alikes
+from niche.logs.labels import Labels, Names, key, listing, tidy
+from niche.logs.lengths import duration as duration  # times and durations are columns that rules read alike, too
 from niche.logs.pieces import Piece
-from niche.logs.rows import Cells, Mask, Rows
+from niche.logs.rows import Rows
+from niche.logs.times import instant as instant
 from niche.logs.visits import OUT_OF_SIGHT
 from niche.study.model import Study
 
-_UNIT_MS = {"s": 1000, "min": 60_000, "h": 3_600_000}
-_LONGEST = 100 * 366 * 86_400_000
-"""A century: a longer bout is a slip of the pen."""
+_DATE = (
+    "a spreadsheet has turned a zone name into a date, as it does with 1-2; write the name again with the column set to "
+    "text, or, where only one name can be meant, accept it under `logs.aliases.zones`"
+)
+_NAMELESS = (
+    "names no animal, and all such rows would count as one animal; give each its name, set "
+    '`logs.problems.nameless_animals` to "set_aside", or `analysis.unit` to "session" where animals are not told apart'
+)
 
 
 def check_headings(piece: Piece, study: Study, needed: tuple[str, ...]) -> None:
@@ -45,96 +51,111 @@ def check_headings(piece: Piece, study: Study, needed: tuple[str, ...]) -> None:
     for name, heading in columns.items():
         if heading is not None and heading not in piece.columns:
             there = ", ".join(repr(h) for h in piece.columns if h)
+            remedy = "Put the right one into the study file."
+            if name == "zone" and sum(key(h) in listing(study.zones.names) for h in piece.columns) > 1:
+                remedy = 'The zones are columns here: set `logs.rule = "tallies"` and `logs.tallies.unit`.'
             raise LogError(
                 f"{piece.file}: line 1: no heading {heading!r}, which `logs.columns.{name}` names. Headings there: "
-                f"{there}. Put the right one into the study file."
+                f"{there}. {remedy}"
             )
 
 
 def species(rows: Rows, study: Study) -> NDArray[np.object_]:
     """Species of each row, by its listed name where the study lists species."""
-    listed = listing(s.name for s in study.species)
+    names = Names.species(study)
     labels = Labels.of(rows.piece.column(study.logs.columns.species))
-    keys = [key(text) for text in labels.written]
-    rows.problem("species", labels.where(k == "" for k in keys), labels, "species missing", "fill it in")
-    if not listed:
-        return labels.spread(tidy(text) for text in labels.written)
-    names = [listed.get(k) for k in keys]
-    unknown = labels.where(bool(k) and name is None for k, name in zip(keys, names, strict=True))
-    advice = {text: f"not listed under `species`; {propose(text, listed)}" for text in labels.written}
-    rows.problem("species", unknown, labels, "unknown species", advice, study.logs.problems.unknown_species)
-    rows.respelled("species", labels, names)
-    return labels.spread(names)
+    blank = [not tidy(text) for text in labels.written]
+    rows.problem("species", labels.where(blank), labels, "species missing", "fill it in")
+    found = [names.find(text) for text in labels.written]
+    unknown = [
+        text for text, name, empty in zip(labels.written, found, blank, strict=True) if name is None and not empty
+    ]
+    advice = names.unknown(unknown, "not listed under `species`")
+    wrong = labels.where(text in advice for text in labels.written)
+    rows.problem("species", wrong, labels, "unknown species", advice, study.logs.problems.unknown_species)
+    _note_spellings(rows, "species", labels, names, found)
+    return labels.spread(found)
 
 
 def zone(rows: Rows, study: Study) -> NDArray[np.object_]:
-    """Zone of each row by its listed name; `OUT_OF_SIGHT` for a declared label or a blank cell."""
-    listed = listing(study.zones.names)
-    unseen = listing(study.logs.out_of_sight)
-    labels = Labels.of(rows.piece.column(study.logs.columns.zone))
-    keys = [key(text) for text in labels.written]
-    blank = labels.where(k == "" for k in keys)
-    rows.flag("zone", blank, labels, "zone blank", "counted as out of sight")
-    allowed = listed | unseen
-    unknown = labels.where(bool(k) and k not in allowed for k in keys)
-    advice = {text: f"no such zone; {propose(text, allowed)}" for text in labels.written}
-    rows.problem("zone", unknown, labels, "unknown zone", advice, study.logs.problems.unknown_zone)
-    rows.respelled("zone", labels, [allowed.get(k) for k in keys])
-    return labels.spread(OUT_OF_SIGHT if k == "" or k in unseen else listed.get(k) for k in keys)
+    """Zone of each row by its listed name; `OUT_OF_SIGHT` for a declared label or a blank cell.
+
+    Where the study says that a label means another zone at each site, zones are listed as ``site: zone``.
+    """
+    names, unseen = Names.zones(study), listing(study.logs.out_of_sight)
+    labels, bare = _zone_labels(rows, study)
+    blank = [not tidy(text) for text in bare]
+    rows.flag("zone", labels.where(blank), labels, "zone blank", "counted as out of sight")
+    found = [names.find(zone if key(zone) in unseen else text) for text, zone in zip(labels.written, bare, strict=True)]
+    unknown = [i for i, name in enumerate(found) if name is None and not blank[i]]
+    dates = {labels.written[i] for i in unknown if mangled.is_date(bare[i])}
+    rows.problem(
+        "zone", labels.where(text in dates for text in labels.written), labels, "zone turned into a date", _DATE, "stop"
+    )
+    advice = names.unknown([text for i in unknown if (text := labels.written[i]) not in dates], "no such zone")
+    wrong = labels.where(text in advice for text in labels.written)
+    rows.problem("zone", wrong, labels, "unknown zone", advice, study.logs.problems.unknown_zone)
+    _note_spellings(rows, "zone", labels, names, [None if b else name for name, b in zip(found, blank, strict=True)])
+    gone = [empty or (name is not None and key(name) in unseen) for name, empty in zip(found, blank, strict=True)]
+    return labels.spread(OUT_OF_SIGHT if out else name for name, out in zip(found, gone, strict=True))
+
+
+def _zone_labels(rows: Rows, study: Study) -> tuple[Labels, list[str]]:
+    """Zone labels as the study lists them, with the site in front if it says so, and each without the site."""
+    zones = Labels.of(rows.piece.column(study.logs.columns.zone))
+    site = study.logs.columns.site
+    if site is None or study.zones.same_across_sites is not False:
+        return zones, zones.written
+    sites = Labels.of(rows.piece.column(site))
+    pairs, index = np.unique(sites.index * max(len(zones.written), 1) + zones.index, return_inverse=True)
+    split = [(sites.written[n // len(zones.written)], zones.written[n % len(zones.written)]) for n in pairs.tolist()]
+    return Labels([f"{place}: {zone}" for place, zone in split], index), [zone for _, zone in split]
 
 
 def plain(rows: Rows, heading: str | None, name: str) -> NDArray[np.object_]:
-    """Animal, session or the like: any name, but not none. Empty throughout where the study names no such column."""
+    """Animal, session, tag or the like: any name, but not none. Empty throughout where the study names no such column."""
+    return _plain(rows, heading, name, Names("animals", {}, {}))
+
+
+def _plain(rows: Rows, heading: str | None, name: str, names: Names) -> NDArray[np.object_]:
     labels = Labels.of(rows.piece.column(heading))
-    names = [tidy(text) for text in labels.written]
+    found = [names.find(text) for text in labels.written]
     if heading is not None:
-        rows.problem(name, labels.where(n == "" for n in names), labels, f"{name} missing", "fill it in")
-    return labels.spread(names)
+        rows.problem(name, labels.where(not n for n in found), labels, f"{name} missing", "fill it in")
+        rounded = labels.where(mangled.is_rounded_id(t) and names.how(t) is None for t in labels.written)
+        rows.problem(name, rounded, labels, "id turned into a number", mangled.ID, "stop")
+        _note_spellings(rows, name, labels, names, found)
+        for reason, scan in (("look-alike letter", look_alikes), ("hidden character", hidden)):
+            odd = {text: scan(text) for text in labels.written if not text.isascii() or not text.isprintable()}
+            advice = {text: f"{holding(odd[text])}; one {name} spelled two ways counts as two" for text in odd}
+            rows.flag(name, labels.where(bool(odd.get(text)) for text in labels.written), labels, reason, advice)
+    return labels.spread(found)
+
+
+def _note_spellings(rows: Rows, name: str, labels: Labels, names: Names, found: list[str | None]) -> None:
+    """Note which labels were read as another name: a matter of spelling, or accepted in the study."""
+    how = {text: words for text in labels.written if (words := names.how(text)) is not None}
+    rows.respelled(name, labels, [None if t in how else f for t, f in zip(labels.written, found, strict=True)])
+    rows.repair(name, labels.where(text in how for text in labels.written), labels, "alias", how)
 
 
 def who(rows: Rows, study: Study) -> tuple[NDArray[np.object_], NDArray[np.object_]]:
     """Animal and session of each row; each stands in for the other where the study names only one column."""
     columns = study.logs.columns
-    animal = plain(rows, columns.animal, "animal")
+    animal = _plain(rows, columns.animal, "animal", Names.animals(study))
     session = plain(rows, columns.session, "session")
-    return (session if columns.animal is None else animal), (animal if columns.session is None else session)
+    if columns.animal is None:
+        return session, session
+    _nameless(rows, study, columns.animal)
+    return animal, (animal if columns.session is None else session)
 
 
-def instant(
-    rows: Rows, study: Study, heading: str | None, name: str, has_offset: bool | None
-) -> tuple[NDArray[np.int64], Mask, bool | None]:
-    """Times of a column in milliseconds since 1970-01-01T00:00Z, which of them could be read, and the file's way.
-
-    ``has_offset`` is what earlier pieces of the file returned last: whether its times carry an offset.
-    """
-    column = rows.piece.column(heading)
-    instants = read_times(column, study.logs.time_zone, has_offset)
-    blank = np.asarray(pc.equal(pc.utf8_trim_whitespace(column), "")) & (instants.problem == UNREADABLE)
-    cells = Cells(column)
-    rows.problem(name, blank, cells, f"{name} missing", "a bout without it has no length")
-    for problem in {p for p in instants.problem if p is not None}:
-        wrong = (instants.problem == problem) & ~blank
-        rows.problem(name, wrong, cells, "unreadable time", problem, study.logs.problems.unreadable)
-    for repair in {r for r in instants.repair if r is not None}:
-        rows.repair(name, instants.repair == repair, cells, "24:00", repair)
-    return instants.ms, instants.problem == None, instants.has_offset  # noqa: E711 - elementwise
-
-
-def duration(rows: Rows, study: Study, heading: str) -> tuple[NDArray[np.int64], Mask]:
-    """Durations in milliseconds, and which of them could be read."""
-    column = pc.utf8_trim_whitespace(rows.piece.column(heading))
-    number = np.asarray(pc.match_substring_regex(column, r"^-?\d{1,15}(\.\d+)?$"))
-    value = np.asarray(pc.cast(pc.if_else(pa.array(number), column, "0"), pa.float64()))
-    length = np.rint(value * _UNIT_MS[study.logs.duration_unit])
-    blank = np.asarray(pc.equal(column, ""))
-    cells, policy = Cells(column), study.logs.problems
-    rows.problem("duration", blank, cells, "duration missing", "a bout without it has no length")
-    advice = "not a plain number, such as 42 or 42.5"
-    rows.problem("duration", ~number & ~blank, cells, "unreadable duration", advice, policy.unreadable)
-    advice = "a duration is not negative"
-    rows.problem("duration", number & (length < 0), cells, "end before start", advice, policy.end_before_start)
-    advice = f"longer than a century; is the unit {study.logs.duration_unit!r} right?"
-    rows.problem("duration", length > _LONGEST, cells, "unreadable duration", advice, policy.unreadable)
-    rows.flag("duration", number & (length == 0), cells, "zero duration", "kept, adds no time")
-    fine = number & (length >= 0) & (length <= _LONGEST)
-    return np.where(fine, length, 0).astype(np.int64), fine
+def _nameless(rows: Rows, study: Study, heading: str) -> None:
+    """Rows whose animal has a label that stands for no animal in particular."""
+    nameless, names = listing(study.logs.nameless), Names.animals(study)
+    labels = Labels.of(rows.piece.column(heading))
+    which = labels.where(key(names.find(text) or "") in nameless for text in labels.written)
+    if study.analysis.unit == "session":
+        rows.flag("animal", which, labels, "nameless animal", "names no animal; kept, for the session is the unit")
+        return
+    rows.problem("animal", which, labels, "nameless animal", _NAMELESS, study.logs.problems.nameless_animals)

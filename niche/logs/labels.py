@@ -1,30 +1,33 @@
-"""Names of zones and species as written to names as listed.
+"""Names of zones, species and animals as written to names as listed.
 
 Two labels are the same if they agree after Unicode compatibility form (NFKC), trimming, single spaces and case folding.
-That repair is safe and is noted. A name that is merely close is proposed in the message, and never applied.
+That repair is safe and is noted. A name that is merely close is proposed in the message, and never applied: a person who
+accepts it writes it into ``logs.aliases`` of the study file.
 """
 
 from __future__ import annotations
 
 import difflib
-import unicodedata
-from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
-from typing import Any
+import json
+from collections.abc import Iterable, Mapping, Sequence
+from dataclasses import dataclass, field
+from typing import Any, Literal
 
 import numpy as np
 import pyarrow.compute as pc
 from numpy.typing import NDArray
 
+from niche.logs.characters import hidden, holding, look_alikes, peculiar
+from niche.study.model import Study
+from niche.study.names import key, listing, tidy
 
-def tidy(text: str) -> str:
-    """Compatibility form, trimmed, single spaces; letters keep their case."""
-    return " ".join(unicodedata.normalize("NFKC", text).split())
+__all__ = ["Labels", "Names", "alias_line", "key", "listing", "propose", "tidy"]
 
+_LONGEST = 80
+"""A longer label is no slip of a name: nothing close is looked for."""
 
-def key(text: str) -> str:
-    """What two spellings of one name share."""
-    return tidy(text).casefold()
+_MOST = 200
+"""Unknown spellings of a piece that are compared with the list; beyond, the log and the list have little in common."""
 
 
 @dataclass(frozen=True)
@@ -55,15 +58,114 @@ class Labels:
         return np.array(list(chosen), dtype=bool)[self.index]
 
 
-def listing(names: Iterable[str]) -> dict[str, str]:
-    """Look-up table from `key` to the name as listed."""
-    return {key(name): name for name in names}
+@dataclass(frozen=True)
+class Names:
+    """Names that a study lists, and the spellings that it accepts for them.
+
+    Attributes
+    ----------
+    table : {"zones", "species", "animals"}
+        The table of ``logs.aliases`` that goes with them.
+    listed : dict
+        `key` to listed name; empty where any name may stand.
+    aliases : dict
+        `key` of an accepted spelling to the name that it stands for.
+    synonyms : dict
+        `key` of a scientific name to the species it belongs to.
+    """
+
+    table: Literal["zones", "species", "animals"]
+    listed: dict[str, str]
+    aliases: dict[str, str]
+    synonyms: dict[str, str] = field(default_factory=dict)
+
+    @classmethod
+    def zones(cls, study: Study) -> Names:
+        """Zones of the layout, and labels for out of sight."""
+        listed = listing([*study.zones.names, *study.logs.out_of_sight])
+        return cls("zones", listed, _aliases(study.logs.aliases.zones, listed))
+
+    @classmethod
+    def species(cls, study: Study) -> Names:
+        """Species of the study, also by their scientific names."""
+        listed = listing(s.name for s in study.species)
+        synonyms = {key(s.scientific_name): s.name for s in study.species if s.scientific_name}
+        return cls("species", listed, _aliases(study.logs.aliases.species, listed), synonyms)
+
+    @classmethod
+    def animals(cls, study: Study) -> Names:
+        """Animals, of which there is no list."""
+        return cls("animals", {}, _aliases(study.logs.aliases.animals, {}))
+
+    def find(self, text: str) -> str | None:
+        """The listed name that a label stands for; None if there is none. Where there is no list, any name stands."""
+        spelling = key(text)
+        found = self.listed.get(spelling) or self.aliases.get(spelling) or self.synonyms.get(spelling)
+        return found if found or self.listed else tidy(text)
+
+    def how(self, text: str) -> str | None:
+        """Why a label stands for another name than its own: words for a note, None where it does not."""
+        spelling, found = key(text), self.find(text)
+        if found is None or spelling in self.listed:
+            return None
+        if spelling in self.aliases:
+            return f"read as {found!r}, by logs.aliases.{self.table}"
+        return f"read as {found!r}, whose scientific name it is" if spelling in self.synonyms else None
+
+    def unknown(self, texts: Sequence[str], rule: str) -> dict[str, str]:
+        """Messages about labels that stand for nothing listed: the rule, what is close, peculiar letters, the remedy."""
+        return {text: f"{rule}; {self._advice(text, number < _MOST)}" for number, text in enumerate(texts)}
+
+    def _advice(self, text: str, look: bool) -> str:
+        close = _closest(text, self.listed) if look else None
+        odd = peculiar(text, self.listed.values())
+        letters = f" It {holding(odd)}." if odd else ""
+        table = f"`logs.aliases.{self.table}`"
+        if close is not None:
+            line = alias_line(text, close)
+            return f"did you mean {close!r}?{letters} Mend the log, or accept the name under {table}: {line}"
+        return (
+            f"{_list(self.listed)}.{letters} Mend the log, add the name to the study, or say under {table} which name it "
+            "stands for"
+        )
+
+
+def alias_line(text: str, name: str) -> str:
+    """The line of a table of aliases that makes one name stand for another, as TOML.
+
+    Characters that cannot be seen or told apart stand as their code points, so that the line can be copied.
+    """
+    return f"{_toml(text)} = {_toml(name)}"
+
+
+def _toml(text: str) -> str:
+    quoted = json.dumps(text, ensure_ascii=False)
+    for character in {*hidden(text), *look_alikes(text)}:
+        if character in quoted:
+            code = ord(character)
+            quoted = quoted.replace(character, f"\\u{code:04X}" if code < 0x10000 else f"\\U{code:08X}")
+    return quoted
 
 
 def propose(text: str, names: Mapping[str, str]) -> str:
     """Words that name the closest listed name, or what is allowed."""
-    close = difflib.get_close_matches(key(text), list(names), n=1, cutoff=0.75)
-    if close:
-        return f"did you mean {names[close[0]]!r}?"
+    close = _closest(text, names)
+    return _list(names) if close is None else f"did you mean {close!r}?"
+
+
+def _closest(text: str, names: Mapping[str, str]) -> str | None:
+    spelling = key(text)
+    if len(spelling) > _LONGEST:
+        return None
+    close = difflib.get_close_matches(spelling, list(names), n=1, cutoff=0.75)
+    return names[close[0]] if close else None
+
+
+def _list(names: Mapping[str, str]) -> str:
     listed = ", ".join(names.values())
     return f"listed are: {listed if len(listed) <= 160 else listed[:157] + '...'}"
+
+
+def _aliases(given: Mapping[str, str], listed: Mapping[str, str]) -> dict[str, str]:
+    """Aliases by `key`; a target gets the spelling of the list."""
+    return {key(text): listed.get(key(name), tidy(name)) for text, name in given.items()}

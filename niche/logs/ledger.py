@@ -121,9 +121,11 @@ class Ledger:
         import pandas as pd
 
         counted = [
-            Entry(file, None, "", f"{rows} rows", "", action.replace("_", " "), action, milliseconds)
+            Entry(
+                file, None, "", f"{rows} rows" if rows else "parts of rows", "", action.replace("_", " "), action, milliseconds
+            )
             for (file, action), (rows, milliseconds) in self.by_file.items()
-            if rows
+            if rows or milliseconds
         ]
         ordered = sorted(counted + self.entries, key=lambda e: (e.file, e.row is not None, e.row or 0))
         return pd.DataFrame(

@@ -5,7 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 from niche.errors import LogError
-from niche.logs.formats.csv_text import read_csv
+from niche.logs.formats import open_pieces
 from niche.logs.labels import Labels, key, tidy
 from niche.logs.ledger import Ledger
 from niche.study import Study, read_study
@@ -42,7 +42,7 @@ def study_of_log(path: Path) -> Study:
     """
     zones: dict[str, str] = {}
     headings: list[str] = []
-    for piece in read_csv(path, path.name, Ledger()):
+    for piece in open_pieces(path, path.name, None, Ledger()):
         headings = [heading for heading in STANDARD_COLUMNS if heading in piece.columns]
         _require(path, headings, list(piece.columns))
         for text in Labels.of(piece.columns["zone"]).written:

@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
-from typing import Annotated, Literal, Self
-from zoneinfo import ZoneInfo
+from typing import Annotated, Any, Literal, Self
 
 from pydantic import Field, field_validator, model_validator
 
+from niche.study.rule_columns import with_rule_columns
 from niche.study.section import Positive, Section, Text, Texts
+from niche.study.standard_columns import with_standard_columns
+from niche.study.time_pattern import check_pattern
+from niche.study.time_zone import time_zone
 
 Policy = Literal["stop", "set_aside"]
 RuleName = Literal["bouts", "switches", "scans", "reads", "camera", "tallies", "one_zero"]
@@ -15,11 +18,17 @@ RuleName = Literal["bouts", "switches", "scans", "reads", "camera", "tallies", "
 Measure = Literal["time", "scans", "events", "counts", "percent", "occurrences"]
 """What use of a zone is measured in: milliseconds, or how many of something."""
 
+CLOCK_FORMATS = ("iso", "spreadsheet", "unix_seconds", "unix_milliseconds", "elapsed", "frames", "decimal_hours")
+"""Ways to write times that have a name; any other is a pattern."""
+
 STANDARD_COLUMNS = ("species", "animal", "session", "zone", "start", "end", "duration")
 
 
 class Columns(Section):
-    """Heading in the logs of each thing the program can use; a rule says which it needs."""
+    """Heading in the logs of each thing the program can use; a rule says which it needs.
+
+    Empty text (``animal = ""``) says that the logs have no such column.
+    """
 
     species: Text | None = "species"
     animal: Text | None = "animal"
@@ -36,6 +45,13 @@ class Columns(Section):
     tag: Text | None = None
     antenna: Text | None = None
     deployment: Text | None = None
+    kind: Text | None = None
+    """Camera: what an event shows; every other word than ``animal`` is set aside."""
+
+    @field_validator("*", mode="before")
+    @classmethod
+    def _empty_is_absent(cls, heading: Any) -> Any:
+        return None if heading == "" else heading
 
 
 class FileForm(Section):
@@ -43,16 +59,30 @@ class FileForm(Section):
 
     encoding: Literal["utf-8", "utf-16", "latin-1", "windows-1252"] | None = None
     delimiter: Annotated[str, Field(min_length=1, max_length=1)] | None = None
+    """The sign between cells; found for comma, semicolon and tab."""
     decimal: Literal[".", ","] | None = None
-    header_row: Annotated[int, Field(ge=1)] | None = None
+    header_row: Annotated[int, Field(ge=1, le=1000)] | None = None
+    """Row of the header, as a spreadsheet counts; rows above it are not read."""
     header_rows: Literal[1, 2] = 1
+    """Two rows are joined by a space; an empty cell of the upper row has the name to its left."""
     units_row: bool = False
+    """Whether the row below the header gives units."""
     totals: Policy = "stop"
+    """What becomes of rows whose species, animal, session, zone, tag or date reads total, subtotal, sum or mean."""
     sheet: Text | None = None
     database: Text | None = None
+    """URL of a database, SQLite or PostgreSQL, which is only ever read."""
     table: Text | None = None
     query: Text | None = None
     descriptor: Text | None = None
+    standard: Literal["darwin-core", "camtrap-dp"] | None = None
+
+    @field_validator("delimiter")
+    @classmethod
+    def _parts_cells(cls, sign: str | None) -> str | None:
+        if sign is not None and (sign.isalnum() or sign in "\"\r\n\0.-:+ " or not (sign.isprintable() or sign == "\t")):
+            raise ValueError(f"{sign!r} cannot part cells; give a sign that no cell holds, such as ; or \\t")
+        return sign
 
     @model_validator(mode="after")
     def _one_source(self) -> Self:
@@ -67,33 +97,39 @@ class Clock(Section):
     """How times are written, where that is not ISO 8601; one way for all files, held to strictly.
 
     ``format`` is ``iso``, ``spreadsheet`` (days since the epoch), ``unix_seconds``, ``unix_milliseconds``, ``elapsed``
-    (since the session's start, in ``logs.duration_unit``), ``frames`` (the same, in frames), or a pattern of strptime
-    codes such as ``%d.%m.%Y %H:%M``.
+    (since the session's start, in ``logs.duration_unit``), ``frames`` (the same, in frames), ``decimal_hours`` (of the
+    day in ``logs.columns.date``), or a pattern of strptime codes such as ``%d.%m.%Y %H:%M``. With ``logs.columns.date``
+    a pattern is that of the date, a space, and the time of day.
     """
 
     format: Text = "iso"
     epoch: Literal[1900, 1904] = 1900
     frames_per_second: Positive | None = None
     midnight: Literal["next_day", "stop"] = "next_day"
-    longest_bout: Positive = 24.0
+    longest_bout: Positive = 12.0
+    """Hours; a longer bout is flagged, and an end before its start is carried past midnight only if the bout is then
+    no longer than this."""
     repeated_hour: Literal["stop", "earlier", "later"] = "stop"
     first_year: int | None = None
     last_year: int | None = None
 
     @model_validator(mode="after")
-    def _frames_have_a_rate(self) -> Self:
-        named = ("iso", "spreadsheet", "unix_seconds", "unix_milliseconds", "elapsed", "frames")
-        if self.format not in named and "%" not in self.format:
+    def _can_be_held_to(self) -> Self:
+        if "%" in self.format:
+            check_pattern(self.format)
+        elif self.format not in CLOCK_FORMATS:
             raise ValueError(
-                f"format is {self.format!r}; allowed: {', '.join(named)}, or a pattern such as %d.%m.%Y %H:%M"
+                f"format is {self.format!r}; allowed: {', '.join(CLOCK_FORMATS)}, or a pattern such as %d.%m.%Y %H:%M"
             )
         if self.format == "frames" and self.frames_per_second is None:
             raise ValueError("format is 'frames': give `frames_per_second` too")
+        if self.first_year is not None and self.last_year is not None and self.first_year > self.last_year:
+            raise ValueError(f"first_year is {self.first_year} and last_year {self.last_year}: the first comes first")
         return self
 
 
 class Sessions(Section):
-    """The sessions table: a CSV of session, start, end and, if known, observer."""
+    """The sessions table: a CSV of session, start, end and, if known, observer; an empty end is not known."""
 
     file: Text
 
@@ -105,7 +141,7 @@ class Tags(Section):
 
 
 class Reads(Section):
-    """How reads of tags are built into visits."""
+    """How reads of tags are built into visits: reads of one animal in one zone, each within the gap of the one before."""
 
     gap: Positive
     """Seconds without a read after which a visit has ended; no default, for it decides the result."""
@@ -115,7 +151,7 @@ class Reads(Section):
     """Zone of each antenna, where the log has no zone column."""
     test_tags: Texts = ()
     lone: Literal["keep", "set_aside"] = "set_aside"
-    """What becomes of a read without another of the same tag at the same antenna within the gap."""
+    """What becomes of a read without another of the same animal in the same zone within the gap."""
 
 
 class Camera(Section):
@@ -125,12 +161,16 @@ class Camera(Section):
     """Seconds between events of a species at a deployment below which they are one. 30 min is a convention."""
     deployments: Text | None = None
     """A CSV of deployment, zone, start, end."""
+    least_probability: Annotated[float, Field(ge=0, le=1)] | None = None
+    """Camtrap DP: classifications by machine that are less probable are set aside."""
 
 
 class Tallies(Section):
     """What the numbers under the zone headings are."""
 
     unit: Literal["s", "min", "h", "percent", "count"]
+    adds_to_100: Literal["stop", "keep"] = "stop"
+    """What to do where rows add up to 100 though the unit is not percent; ``keep`` says that they are no percentages."""
 
 
 class Aliases(Section):
@@ -149,10 +189,16 @@ class Policies(Section):
     unreadable: Policy = "stop"
     end_before_start: Policy = "stop"
     overlap: Literal["stop", "set_aside", "trim_earlier", "split"] = "stop"
+    """One animal in two places at once. ``set_aside`` takes out the later bout; ``trim_earlier`` ends the earlier one
+    where the later starts; ``split`` lets the later one take over in the middle of the time they share."""
     two_observers: Literal["stop", "set_aside_later"] = "stop"
+    """Two observers with one animal at the same time, where ``logs.observer`` does not decide. ``set_aside_later`` uses
+    the rows of the one who had the animal first."""
     last_state_open: Policy = "set_aside"
     nameless_animals: Policy = "stop"
+    """Animals with a label of ``logs.nameless``, where the animal is the sampling unit."""
     reused_animals: Literal["stop", "keep_apart_by_site", "same_animal"] = "stop"
+    """One animal name at several sites over the same days."""
 
 
 class Logs(Section):
@@ -186,25 +232,51 @@ class Logs(Section):
             return {"percent": "percent", "count": "counts"}.get(self.tallies.unit, "time")  # type: ignore[return-value]
         return {"scans": "scans", "camera": "events"}.get(self.rule, "occurrences")  # type: ignore[return-value]
 
+    def tells(self, unit: Literal["animal", "session"]) -> bool:
+        """Whether the logs give every visit a sampling unit of this kind.
+
+        An animal can be known by its tag; a camera's deployment is a session; a tally sheet without animals gives each
+        species one sum, which has no interval.
+        """
+        if getattr(self.columns, unit) is not None:
+            return True
+        if unit == "session":
+            return self.rule == "camera"
+        return self.rule == "tallies" or (
+            self.rule == "reads" and (self.tags is not None or self.columns.tag is not None)
+        )
+
     @field_validator("time_zone")
     @classmethod
     def _known_time_zone(cls, name: str | None) -> str | None:
         if name is not None:
-            try:
-                ZoneInfo(name)
-            except (KeyError, ValueError, OSError) as error:
-                raise ValueError("no such time zone; give an IANA name such as Europe/Berlin or Etc/GMT-1") from error
+            time_zone(name)
         return name
+
+    @model_validator(mode="before")
+    @classmethod
+    def _standard_names_its_columns(cls, given: Any) -> Any:
+        return with_rule_columns(with_standard_columns(given))
 
     @model_validator(mode="after")
     def _has_what_the_rule_needs(self) -> Self:
         columns = self.columns
         if not self.files and self.file.database is None:
             raise ValueError("`files` names no log; give at least one file, or a database under `logs.file`")
-        if self.rule == "bouts" and (columns.end is None) == (columns.duration is None):
+        if self.rule == "bouts":
+            self._bouts_have_an_end()
+        dated, form = columns.date is not None, self.clock.format
+        if dated and form in ("unix_seconds", "unix_milliseconds", "elapsed", "frames"):
+            raise ValueError(f"`clock.format` is {form!r}, which needs no date: leave `columns.date` out")
+        if form == "decimal_hours" and not dated:
+            raise ValueError("`clock.format` is 'decimal_hours': name the column of the date as `columns.date`")
+        if form in ("elapsed", "frames") and (self.sessions is None or columns.session is None):
             raise ValueError(
-                "a bout ends by its `end` or its `duration` column: name one of the two under `logs.columns`"
+                f"`clock.format` is {form!r}, counted from the start of each session: give `logs.sessions.file` and "
+                "`columns.session`"
             )
+        if self.file.standard == "camtrap-dp" and self.rule != "camera":
+            raise ValueError("`file.standard` is 'camtrap-dp', which goes with rule = \"camera\": events are not stays")
         if self.rule == "reads" and self.reads is None:
             raise ValueError("the rule 'reads' needs `logs.reads.gap`: the seconds without a read that end a visit")
         if self.rule == "tallies" and self.tallies is None:
@@ -212,3 +284,16 @@ class Logs(Section):
         if self.duration_unit == "frames" and self.clock.frames_per_second is None:
             raise ValueError("duration_unit is 'frames': give `logs.clock.frames_per_second` too")
         return self
+
+    def _bouts_have_an_end(self) -> None:
+        columns = self.columns
+        if columns.end is not None and columns.duration is not None:
+            raise ValueError(
+                "a bout ends by its `end` or its `duration` column: name one of the two under `logs.columns`"
+            )
+        if columns.end is None and columns.duration is None and (self.clock.format != "iso" or columns.date is not None):
+            raise ValueError(
+                "a bout ends by its `end` or its `duration` column: name one of the two under `logs.columns`. Only with "
+                "`clock.format` = 'iso' and no `columns.date` may both be left out: then each start cell holds an "
+                "interval such as 2026-09-03T08:15/08:40"
+            )

@@ -35,9 +35,10 @@ class Zones(Section):
     availability: Availability | None = None
     availability_source: Text | None = None
     effort: dict[str, Annotated[float, Field(ge=0, allow_inf_nan=False)]] | None = None
-    """Hours that each zone was looked at, where they differ; 0 for a zone that was not looked at."""
+    """Hours that each zone was looked at, or that its antenna was on; 0 for a zone that was not looked at."""
     same_across_sites: bool | None = None
-    """Whether a zone label means the same zone at every site; asked for where sites share labels."""
+    """Whether a zone label means the same zone at every site; asked for where sites share labels. With false, the layout
+    names each zone as ``site: zone``."""
 
     @model_validator(mode="after")
     def _layout_fits(self) -> Self:
@@ -132,6 +133,8 @@ class Settings(Section):
     core: Annotated[float, Field(gt=0, lt=1)] = 0.5
     demand: Literal["intake", "body_mass", "equal"] | None = None
     mass_exponent: Annotated[float, Field(gt=0, le=2)] = 0.75
+    effort: Literal["ignore", "divide"] = "ignore"
+    """Whether use is divided by the hours that each zone was looked at (``zones.effort``) before proportions are taken."""
 
 
 class ReportText(Section):

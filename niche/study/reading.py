@@ -15,6 +15,7 @@ from typing import Any, get_args
 from pydantic import BaseModel, ValidationError
 
 from niche.errors import StudyError
+from niche.study.checked_names import check_names
 from niche.study.model import Availability, Study, Zones
 
 STUDY_FILE = "study.toml"
@@ -83,6 +84,7 @@ def study_from_text(text: str, file: Path) -> Study:
             study._folder = file.parent
     except ValidationError as error:
         raise StudyError("\n".join(f"{file}: {line}" for line in _explain(error))) from None
+    check_names(study, file)
     return study
 
 
@@ -186,6 +188,8 @@ def _zones_from_sheet(file: Path, declared: Zones) -> Zones:
         columns=columns,
         layout=tuple(tuple(cells.get((row, column), "") for column in columns) for row in rows),
         availability=availability,
+        effort=declared.effort,
+        same_across_sites=declared.same_across_sites,
     )
 
 

@@ -1,38 +1,42 @@
-"""CSV in UTF-8 (RFC 4180), read record by record so that every row keeps its line number.
-
-The standard library's reader in strict mode tells exactly where quoting goes wrong, which a person needs more than speed.
-"""
+"""Text tables (RFC 4180 and its relatives): CSV, TSV, semicolons, packed or not, every row with its line number."""
 
 from __future__ import annotations
 
-import csv
 from collections.abc import Iterator
+from itertools import islice
 from pathlib import Path
-from typing import TYPE_CHECKING
 
 import numpy as np
 import pyarrow as pa
 
 from niche.errors import LogError
-from niche.logs.ledger import Action, Entry, Ledger
+from niche.logs.formats import counting
+from niche.logs.formats.byte_source import find_encoding, whole_lines
+from niche.logs.formats.counting import count_records
+from niche.logs.formats.delimiter import SAMPLE_LINES, find_delimiter
+from niche.logs.formats.heading import Heading, find_heading, rows_needed
+from niche.logs.formats.inspector import Inspector
+from niche.logs.formats.records import Records
+from niche.logs.formats.wanted import Wanted
+from niche.logs.ledger import Ledger
 from niche.logs.pieces import Piece
 
-if TYPE_CHECKING:
-    from _csv import Reader
-
 PIECE_ROWS = 100_000
-
-csv.field_size_limit(1_000_000)
+PIECE_CELLS = 4_000_000
+"""Most cells of a piece that is put together row by row."""
 
 _CELLS = {
-    False: "leave a cell empty where there is nothing to write, but keep its comma",
-    True: "a comma inside a cell needs quotes round the cell",
+    False: "leave a cell empty where there is nothing to write, but keep its {sign}",
+    True: "a {sign} inside a cell needs quotes round the cell",
 }
 """Remedy for too few cells, and for too many."""
+_SIGNS = {",": "comma", ";": "semicolon", "\t": "tab"}
+
+Row = tuple[int, list[str]]
 
 
 def read_csv(path: Path, name: str, ledger: Ledger, piece_rows: int = PIECE_ROWS) -> Iterator[Piece]:
-    """Pieces of a CSV file.
+    """Pieces of a text table that no study describes: UTF-8, the header in its first line.
 
     Parameters
     ----------
@@ -47,73 +51,113 @@ def read_csv(path: Path, name: str, ledger: Ledger, piece_rows: int = PIECE_ROWS
     Raises
     ------
     LogError
-        The file cannot be opened, is not UTF-8, has no header, repeats a heading, or breaks the quoting rules.
+        The file cannot be opened or decoded, has no header, repeats a heading, or breaks the quoting rules.
     """
-    try:
-        with path.open(encoding="utf-8-sig", newline="") as stream:
-            yield from _pieces(csv.reader(stream, strict=True), name, ledger, piece_rows)
-    except FileNotFoundError:
-        raise LogError(f"{name}: there is no such file.") from None
-    except UnicodeDecodeError as error:
+    yield from read_text(path, Wanted.of(name, ledger, None), piece_rows)
+
+
+def read_text(path: Path, wanted: Wanted, piece_rows: int = PIECE_ROWS) -> Iterator[Piece]:
+    """Pieces of a text table as the study declares it; a file without rows gives one empty piece with its headings.
+
+    The file is gone through twice: records are counted without the reader first, and the reading must come to the same
+    number.
+
+    Raises
+    ------
+    LogError
+        The file cannot be opened, decoded or taken apart, something must be declared, or it was cut off.
+    """
+    encoding, mark = find_encoding(path, wanted)
+    sample = b"".join(islice(whole_lines(path, wanted.name, encoding, mark), 1)).decode()
+    lines = sample.splitlines(keepends=True)[: SAMPLE_LINES + (wanted.form.header_row or 1)]
+    suffix = Path(path.stem).suffix if path.suffix.lower() == ".gz" else path.suffix
+    delimiter = find_delimiter(lines, wanted, suffix.lower())
+    expected = count_records(whole_lines(path, wanted.name, encoding, mark), delimiter)
+    if expected == counting.SHEET_ROWS:
         raise LogError(
-            f"{name}: not UTF-8 (byte {error.object[error.start]:#04x}: {error.reason}). Save the log as UTF-8 CSV."
-        ) from None
-    except OSError as error:
-        raise LogError(f"{name}: cannot be read ({error.strerror}).") from None
+            f"{wanted.name}: exactly {expected} lines, the most a spreadsheet holds: the rest was cut off on the way. "
+            "Export again in parts; or add an empty line at the end if nothing is missing."
+        )
+    records = Records(whole_lines(path, wanted.name, encoding, mark), wanted.name, delimiter)
+    yield from _pieces(records, wanted, piece_rows)
+    if records.count != expected:
+        raise LogError(
+            f"{wanted.name}: {records.count} records read and {expected} counted: the reading was cut short or a quote "
+            "stands where none should. Nothing was computed from it."
+        )
 
 
-def _pieces(reader: Reader, name: str, ledger: Ledger, piece_rows: int) -> Iterator[Piece]:
-    header = _next_record(reader, name)
-    if header is None or not any(header):
-        raise LogError(f"{name}: line 1: no header. The first line names the columns.")
-    headings = [" ".join(cell.split()) for cell in header]
-    for heading in headings:
-        if heading and headings.count(heading) > 1:
-            raise LogError(
-                f"{name}: line 1: the heading {heading!r} stands twice. Each column needs a name of its own."
+def _pieces(records: Records, wanted: Wanted, piece_rows: int) -> Iterator[Piece]:
+    top: list[Row] = []
+    inner: dict[int, list[str]] = {}
+    for _ in range(rows_needed(wanted)):
+        record = records.next_record()
+        if record is None:
+            break
+        top.append(record[:2])
+        inner[record[0]] = record[2]
+    heading, taken = find_heading(top, wanted)
+    inspector, batch = Inspector(wanted, heading, records.delimiter), _Batch(wanted, heading, records.delimiter)
+    begun = False
+    for row, cells in top[taken:]:
+        batch.add(row, cells, inner[row])
+    limit = max(1, min(piece_rows, PIECE_CELLS // max(1, heading.width)))
+    while records.more():
+        if (block := records.next_columns(heading.width)) is not None:
+            if batch.rows:
+                yield inspector.inspect(*batch.take())
+            first, columns = block
+            rows = np.arange(first, first + len(columns[0]), dtype=np.int64)
+            for start in range(0, len(rows), piece_rows):
+                part = slice(start, start + piece_rows)
+                yield inspector.inspect(rows[part], [c.slice(start, piece_rows) for c in columns])
+            begun = True
+            continue
+        for record in iter(records.next_record, None):
+            batch.add(*record)
+            if len(batch.rows) >= limit:
+                yield inspector.inspect(*batch.take())
+                begun = True
+            if records.chunk_done:
+                break
+    if batch.rows or not begun:
+        yield inspector.inspect(*batch.take())
+    inspector.finish()
+
+
+class _Batch:
+    """Records gathered one by one; those with the wrong number of cells go to the ledger."""
+
+    def __init__(self, wanted: Wanted, heading: Heading, delimiter: str) -> None:
+        self.wanted, self.heading, self.delimiter = wanted, heading, delimiter
+        self.rows: list[int] = []
+        self.records: list[list[str]] = []
+
+    def add(self, row: int, cells: list[str], inner: list[str]) -> None:
+        """Take a record; ``inner`` are the lines that lie wholly inside it, between line breaks in its cells."""
+        width, sign = self.heading.width, self.delimiter
+        called = _SIGNS.get(sign, repr(sign))
+        if not cells:
+            cells = [""] * width
+        if len(cells) != width:
+            problem = (
+                f"{len(cells)} cells where the header has {width}; {_CELLS[len(cells) > width].format(sign=called)}"
             )
-    width, records, rows, begun = len(headings), [], [], False
-    line = reader.line_num + 1
-    while (record := _next_record(reader, name)) is not None:
-        if len(record) == width:
-            if any(record):
-                records.append(record)
-                rows.append(line)
-            else:
-                _set_aside(ledger, name, line, "", "blank row", "no cell is filled", "set_aside")
-        elif not record:
-            _set_aside(ledger, name, line, "", "blank row", "no cell is filled", "set_aside")
+            self.wanted.drop(row, sign.join(cells), "wrong number of cells", problem, "stop")
+        elif width > 1 and any(line.count(sign) >= width - 1 for line in inner):
+            problem = (
+                f"a cell holds {len(inner)} or more whole lines of the file: a quote is missing or too many in lines "
+                f"{row} to {row + len(inner) + 1}"
+            )
+            self.wanted.drop(row, sign.join(cells), "rows inside a cell", problem, "stop")
         else:
-            problem = f"{len(record)} cells where the header has {width}; {_CELLS[len(record) > width]}"
-            _set_aside(ledger, name, line, ",".join(record)[:80], "wrong number of cells", problem, "stop")
-        line = reader.line_num + 1
-        if len(records) == piece_rows:
-            yield _piece(name, headings, records, rows)
-            records, rows, begun = [], [], True
-    if records or not begun:  # a file without rows still gives its headings, to be checked
-        yield _piece(name, headings, records, rows)
+            self.rows.append(row)
+            self.records.append(cells)
 
-
-def _set_aside(ledger: Ledger, name: str, line: int, value: str, reason: str, problem: str, action: Action) -> None:
-    """Account for a row that cannot be read as a record."""
-    ledger.come_in(name, 1)
-    ledger.dispose([Entry(name, line, "", value, reason, problem, action)])
-
-
-def _next_record(reader: Reader, name: str) -> list[str] | None:
-    try:
-        return next(reader, None)
-    except csv.Error as error:
-        raise LogError(
-            f"{name}: line {reader.line_num}: {error}. A quoted cell must end with a quote before the next comma or line "
-            "end; two quotes in a row stand for one."
-        ) from None
-
-
-def _piece(name: str, headings: list[str], records: list[list[str]], rows: list[int]) -> Piece:
-    columns = zip(*records, strict=True) if records else ([] for _ in headings)
-    return Piece(
-        name,
-        np.array(rows, dtype=np.int64),
-        {heading: pa.array(cells, type=pa.string()) for heading, cells in zip(headings, columns, strict=True)},
-    )
+    def take(self) -> tuple[np.ndarray[tuple[int], np.dtype[np.int64]], list[pa.Array]]:
+        """What was gathered, as row numbers and columns; the batch is empty afterwards."""
+        width = self.heading.width
+        columns = zip(*self.records, strict=True) if self.records else ([] for _ in range(width))
+        taken = np.array(self.rows, dtype=np.int64), [pa.array(cells, type=pa.string()) for cells in columns]
+        self.rows, self.records = [], []
+        return taken

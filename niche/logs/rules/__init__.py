@@ -10,6 +10,12 @@ import pandas as pd
 from niche.logs.ledger import Ledger
 from niche.logs.pieces import Piece
 from niche.logs.rules.bouts import Bouts
+from niche.logs.rules.camera import Camera
+from niche.logs.rules.one_zero import OneZero
+from niche.logs.rules.reads import Reads
+from niche.logs.rules.scans import Scans
+from niche.logs.rules.switches import Switches
+from niche.logs.rules.tallies import Tallies
 from niche.study.model import Study
 
 
@@ -25,5 +31,13 @@ class Rule(Protocol):
         ...
 
 
-RULES: dict[str, Callable[[Study, Ledger], Rule]] = {"bouts": Bouts}
+RULES: dict[str, Callable[[Study, Ledger], Rule]] = {
+    "bouts": Bouts,
+    "switches": Switches,
+    "scans": Scans,
+    "reads": Reads,
+    "camera": Camera,
+    "tallies": Tallies,
+    "one_zero": OneZero,
+}
 """What a study's ``logs.rule`` names."""
