@@ -5,8 +5,9 @@ A Usage is a sum. Two Usages over the same zones add, unit by unit, so a log can
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Literal
 
 import numpy as np
@@ -32,7 +33,7 @@ class Usage:
     zones : tuple of Z str
         Every zone that could be used, in the order of the layout, used or not.
     units : tuple of S tuples of str
-        Names of the sampling units of each species, sorted.
+        Names of the sampling units of each species, sorted; numbers in them by size.
     time : tuple of S arrays, each (U_s, Z)
         Milliseconds in each zone (whole numbers), or whatever amounts were given to `from_units`.
     visits : tuple of S arrays, each (U_s, Z), or None
@@ -66,7 +67,7 @@ class Usage:
         Parameters
         ----------
         use : mapping of species name to array_like, shape (units, zones)
-            Time or counts, finite and at least 0. A unit without any use is left out: it tells nothing about zones.
+            Time or counts, finite and at least 0.
         zones : sequence of str
         visits : mapping of species name to array_like, shape (units, zones), optional
             Counts of visits, for Morisita's index.
@@ -93,9 +94,8 @@ class Usage:
         time, counts, labels = [], [], []
         for species, given in use.items():
             amounts = _checked(given, species, "use", len(names))
-            seen = amounts.sum(axis=1) > 0
-            time.append(amounts[seen])
-            labels.append(tuple(str(i + 1) for i in np.flatnonzero(seen)))
+            time.append(amounts)
+            labels.append(tuple(str(i + 1) for i in range(len(amounts))))
             if visits is not None:
                 if species not in visits:
                     raise ValueRuleError(
@@ -104,7 +104,7 @@ class Usage:
                 count = _checked(visits[species], species, "visits", len(names))
                 if count.shape != amounts.shape:
                     raise ValueRuleError(f"visits of {species!r} has shape {count.shape}; use has {amounts.shape}.")
-                counts.append(count[seen])
+                counts.append(count)
         shares = None
         if availability is not None:
             shares = _shares(_checked(np.asarray(availability)[None], "availability", "availability", len(names))[0])
@@ -143,15 +143,16 @@ class Usage:
         units, time, counts = [], [], []
         for name in species:
             mine = who == name
-            labels, row = np.unique(names[mine].astype(str), return_inverse=True)
+            labels = sorted(set(names[mine]), key=_natural)
+            at = {label: number for number, label in enumerate(labels)}
+            row = np.array([at[label] for label in names[mine]], dtype=np.intp)
             tally = np.zeros((len(labels), len(zones)), dtype=np.int64)
             count = np.zeros_like(tally)
             np.add.at(tally, (row, column[mine]), length[mine])
             np.add.at(count, (row, column[mine]), 1)
-            used = tally.sum(axis=1) > 0
-            units.append(tuple(labels[used].tolist()))
-            time.append(tally[used])
-            counts.append(count[used])
+            units.append(tuple(labels))
+            time.append(tally)
+            counts.append(count)
         return cls(species, zones, tuple(units), tuple(time), tuple(counts), unit, study_availability(study))
 
     def __add__(self, other: Usage) -> Usage:
@@ -164,7 +165,7 @@ class Usage:
         time: list[NDArray[np.number]] = []
         counts: list[NDArray[np.number]] = []
         for s in range(len(self.species)):
-            names = sorted({*self.units[s], *other.units[s]})
+            names = sorted({*self.units[s], *other.units[s]}, key=_natural)
             row = {name: number for number, name in enumerate(names)}
             units.append(tuple(names))
             for gathered, field in ((time, "time"), (counts, "visits")):
@@ -185,10 +186,28 @@ class Usage:
             self.availability,
         )
 
+    def with_use(self) -> Usage:
+        """The same without units that have no use: they tell nothing about zones, and are no unit of a resample."""
+        used = [t.sum(axis=1) > 0 for t in self.time]
+        return replace(
+            self,
+            units=tuple(
+                tuple(n for n, u in zip(names, us, strict=True) if u)
+                for names, us in zip(self.units, used, strict=True)
+            ),
+            time=tuple(t[u] for t, u in zip(self.time, used, strict=True)),
+            visits=None if self.visits is None else tuple(v[u] for v, u in zip(self.visits, used, strict=True)),
+        )
+
     @property
     def unit_counts(self) -> NDArray[np.int64]:
         """Number of sampling units of each species, shape (S,)."""
         return np.array([len(names) for names in self.units], dtype=np.int64)
+
+
+def _natural(name: str) -> list[tuple[int, str]]:
+    """Sorting key under which ``2`` comes before ``10``."""
+    return [(int(part), part) if part.isascii() and part.isdigit() else (-1, part) for part in re.split(r"(\d+)", name)]
 
 
 def study_availability(study: Study) -> NDArray[np.float64] | None:

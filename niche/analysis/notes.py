@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 from niche.resampling.intervals import FEW_UNITS, FEWEST_UNITS
 
 if TYPE_CHECKING:
-    from niche.analysis.results import Coefficients, Estimate, Options
+    from niche.analysis.results import Analysis, Coefficients, Estimate, Options
     from niche.indices.products import Floats
     from niche.usage import Usage
 
@@ -103,4 +103,15 @@ def interval_rests_on(usage: Usage, options: Options) -> str:
     return (
         f"{options.confidence:.0%} percentile intervals, {options.resamples} resamples of {usage.unit}s ({counts}), "
         f"seed {options.seed}."
+    )
+
+
+def cores_in_words(analysis: Analysis) -> tuple[str, ...]:
+    """What the core zones of each species really hold, which is mostly more than the share asked for."""
+    usage, use = analysis.usage, analysis.use
+    return tuple(
+        f"Core of {name}, {share:.0%} of its use: "
+        f"{', '.join(z for z, inside in zip(usage.zones, core, strict=True) if inside)}."
+        for name, core, share in zip(usage.species, use.core, use.core_share, strict=True)
+        if core.any()
     )
