@@ -53,7 +53,8 @@ def effort_timeline(by_day: pd.DataFrame) -> Drawing:
                 edgecolor=INK,
                 linewidth=0.8,
             )
-            axes.set_title(wrapped(f"{name}: {_hours(hours)}", 90, 2), loc="left", fontsize=10)
+            axes.set_title(wrapped(name, 50, 2), loc="left", fontsize=10)
+            axes.set_title(_hours(hours), loc="right", fontsize=9)
             axes.grid(axis="y")
             axes.spines[["top", "right"]].set_visible(False)
             axes.yaxis.set_major_locator(MaxNLocator(3, integer=True))

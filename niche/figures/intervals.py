@@ -10,8 +10,8 @@ from matplotlib.lines import Line2D
 
 from niche.errors import ValueRuleError
 from niche.figures.drawing import INK, Drawing, look
-from niche.figures.pairs import require_pairs
-from niche.figures.words import UNDEFINED, level, number, span, wrapped
+from niche.figures.pairs import Pair, require_pairs
+from niche.figures.words import UNDEFINED, level, number, runs_leftward, span, wrapped
 from niche.indices import OVERLAP
 
 if TYPE_CHECKING:
@@ -64,7 +64,7 @@ def overlap_intervals(analysis: Analysis, index: str = "pianka") -> Drawing:
                 e.pooled[at], y + 0.24, "D", markersize=5.5, markerfacecolor="none", markeredgecolor=INK, zorder=4
             )
             axes.plot(e.value[at], y, "o", markersize=7, color=_COLOUR, markeredgecolor="white", zorder=3)
-        axes.set_yticks(range(len(found)), [wrapped(f"{p.first} – {p.second}", 34, 2) for p in found])
+        axes.set_yticks(range(len(found)), [_label(p) for p in found])
         axes.set_ylim(len(found) - 0.4, -0.6)
         axes.set_xlim(-0.02, 1.02)
         axes.set_xlabel(f"{OVERLAP[index].title}: 0 no zone shared, 1 same use")
@@ -87,6 +87,13 @@ def overlap_intervals(analysis: Analysis, index: str = "pianka") -> Drawing:
     ]
     alt = f"{OVERLAP[index].title} of each pair with its {confidence} interval and the pooled value: {'; '.join(told)}."
     return Drawing(f"overlap_intervals_{index}", title, alt, figure)
+
+
+def _label(pair: Pair) -> str:
+    """Both names on a line, or on one each where writing direction would swap them."""
+    if runs_leftward(pair.first + pair.second):
+        return f"{wrapped(pair.first, 34, 1)}\n{wrapped(pair.second, 34, 1)}"
+    return wrapped(f"{pair.first} – {pair.second}", 34, 2)
 
 
 def _told(first: str, second: str, value: float, low: float, high: float, pooled: float) -> str:

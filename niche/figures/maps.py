@@ -43,7 +43,8 @@ def zone_maps(analysis: Analysis, zones: Zones) -> Drawing:
     """
     species = analysis.usage.species
     rows, columns = len(zones.rows), len(zones.columns)
-    cell = (0.9, 0.62) if columns <= _ROOM_FOR_NAMES else (0.62, 0.55)
+    roomy = columns <= (4 if _told_by_headings(zones) else _ROOM_FOR_NAMES)
+    cell = (0.9, 0.62) if roomy else (0.62, 0.55)
     beside = 0.35 + cell[0] * columns
     across = max(1, min(len(species), int((_WIDEST - 1.5) // beside)))
     down = math.ceil(len(species) / across)
@@ -61,7 +62,8 @@ def zone_maps(analysis: Analysis, zones: Zones) -> Drawing:
             grid.ravel().tolist(),
             "share of use",
             format=PercentFormatter(1.0),
-            shrink=min(1.0, 0.55 + 0.15 * rows / 3),
+            shrink=min(0.7, 3.3 / size[1]),
+            anchor=(0.0, 0.5 if down < 3 else 1.0),
             aspect=25,
         )
         handles = [Patch(facecolor="white", edgecolor=INK, linewidth=2, label="core zone")]

@@ -59,7 +59,9 @@ def overlap_matrix(analysis: Analysis, index: str = "pianka") -> Drawing:
             xticklabels=False,
             yticklabels=False,
         )
-        scale_bar(figure, [axes], f"{OVERLAP[index].title} (0 to 1)", aspect=25)
+        scale_bar(
+            figure, [axes], f"{OVERLAP[index].title} (0 to 1)", aspect=25, shrink=min(1.0, 3.3 / figure.get_figheight())
+        )
         colours = mpl.colormaps[SCALE]
         for pair in found:
             value = estimate.value[pair.s, pair.t]

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 import textwrap
 import unicodedata
 from collections.abc import Sequence
@@ -10,6 +11,9 @@ from collections.abc import Sequence
 from niche.resampling.intervals import FEWEST_UNITS
 
 UNDEFINED = "not defined"
+
+_RIGHT_TO_LEFT = "\u0590-\u08ff\ufb1d-\ufdff\ufe70-\ufefc\U00010800-\U00010fff\U0001e800-\U0001efff"
+_RUN = re.compile(f"[{_RIGHT_TO_LEFT}]+(?:[ '’.-]+[{_RIGHT_TO_LEFT}]+)*")
 
 
 def number(value: float, places: int = 2) -> str:
@@ -85,6 +89,16 @@ def no_interval(units: Sequence[int], names: Sequence[str], unit: str) -> str:
     """
     few = [f"{count(n, unit)} of {name}" for n, name in zip(units, names, strict=True) if n < FEWEST_UNITS]
     return f"no interval: {joined(few)}" if few else "no interval: no resample gives a value"
+
+
+def runs_leftward(text: str) -> bool:
+    """Whether a text holds letters that are written from right to left."""
+    return _RUN.search(text) is not None
+
+
+def isolated(text: str) -> str:
+    """A sentence whose right-to-left names keep to themselves and do not turn the words and numbers around them."""
+    return _RUN.sub("\u2068\\g<0>\u2069", text)
 
 
 def wrapped(text: str, width: int, lines: int = 3) -> str:

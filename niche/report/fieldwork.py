@@ -25,7 +25,7 @@ def fieldwork(run: Run) -> list[str]:
     counts = usage.unit_counts
     fewest = int(counts.min())
     names = joined([name for name, n in zip(usage.species, counts, strict=True) if n == fewest])
-    told = [f"The fewest {unit}s were watched of {names}: {fewest}."]
+    told = [f"Fewest {unit}s: {names} ({fewest})."]
     few = [name for name, n in zip(usage.species, counts, strict=True) if n < FEW_UNITS]
     if few:
         told.append(f"With fewer than {FEW_UNITS} {unit}s ({joined(few)}) intervals may be too narrow.")

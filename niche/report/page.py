@@ -14,7 +14,7 @@ from niche.analysis.notes import interval_rests_on
 from niche.figures.drawing import Drawing
 from niche.figures.saving import inline_svg
 from niche.figures.windows import windows
-from niche.figures.words import no_interval
+from niche.figures.words import isolated, no_interval
 from niche.report import rows
 from niche.report.fieldwork import fieldwork
 from niche.report.references import references
@@ -60,11 +60,17 @@ def page(run: Run, figures: Mapping[str, tuple[Drawing, str]], record: Mapping[s
         loader=PackageLoader("niche.report"),
         autoescape=True,
         undefined=StrictUndefined,
+        finalize=_finished,
         trim_blocks=True,
         lstrip_blocks=True,
         keep_trailing_newline=True,
     )
     return environment.get_template("report.html").render(**_content(run, figures, record))
+
+
+def _finished(value: Any) -> Any:
+    """What is put into the page: text with its right-to-left names set apart."""
+    return isolated(value) if type(value) is str else value
 
 
 def _content(run: Run, figures: Mapping[str, tuple[Drawing, str]], record: Mapping[str, Any]) -> dict[str, Any]:

@@ -28,8 +28,8 @@ def test_bars_stand_on_their_dates(by_day):
 
 def test_strips_are_labelled_and_outlined(by_day):
     first, second = effort_timeline(by_day).figure.axes
-    assert first.get_title(loc="left") == "dunlin: 3.8 h on 2 dates, 2.2 h at most"
-    assert second.get_title(loc="left") == "redshank: 1.5 h on 2 dates, 1.0 h at most"
+    assert [first.get_title(loc=side) for side in ("left", "right")] == ["dunlin", "3.8 h on 2 dates, 2.2 h at most"]
+    assert [second.get_title(loc=side) for side in ("left", "right")] == ["redshank", "1.5 h on 2 dates, 1.0 h at most"]
     for axes, colour in zip((first, second), PALETTE, strict=False):
         assert {to_hex(p.get_facecolor()) for p in axes.patches} == {colour.lower()}
         assert {to_hex(p.get_edgecolor()) for p in axes.patches} == {INK}

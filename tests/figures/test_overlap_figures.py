@@ -77,3 +77,8 @@ def test_errors_say_what_is_there(analysis, make, draw):
         draw(analysis, "levins")
     with pytest.raises(ValueRuleError, match="needs two species; the analysis has 1"):
         draw(make({"dunlin": [[1, 2, 3]] * 3}))
+
+
+def test_writing_direction_swaps_no_pair(make):
+    axes = overlap_intervals(make({"כרון": [[1, 2, 3]] * 3, "dunlin": [[3, 2, 1]] * 3})).figure.axes[0]
+    assert [t.get_text() for t in axes.get_yticklabels()] == ["כרון\ndunlin"]

@@ -2,7 +2,7 @@ import math
 
 import pytest
 
-from niche.figures.words import count, joined, level, no_interval, number, percent, span, wrapped
+from niche.figures.words import count, isolated, joined, level, no_interval, number, percent, span, wrapped
 
 
 @pytest.mark.parametrize(
@@ -77,3 +77,9 @@ def test_long_labels_are_broken_and_cut():
     assert wrapped("上上上上上上", 6) == "上上上上上上"[:4] + "\n上上"
     assert wrapped("a\x00b\x1b", 10) == "ab"
     assert wrapped("", 10) == " "
+
+
+def test_names_written_from_right_to_left_are_set_apart():
+    assert isolated("كروان and dunlin: 3") == "\u2068كروان\u2069 and dunlin: 3"
+    assert isolated("5 of كروان شاطئ, 6") == "5 of \u2068كروان شاطئ\u2069, 6"
+    assert isolated("Бекас 上の砂 é") == "Бекас 上の砂 é"

@@ -141,7 +141,7 @@ def test_assumptions_of_competition_only_with_coefficients(make, plain):
 
 def test_fieldwork_names_what_is_thin(plain):
     text = " ".join(fieldwork(plain))
-    assert "The fewest animals were watched of redshank: 4." in text
+    assert "Fewest animals: redshank (4)." in text
     e = plain.analysis.overlap["pianka"]
     width = e.high - e.low
     s, t = np.unravel_index(np.nanargmax(np.triu(width, 1)), width.shape)
@@ -151,7 +151,7 @@ def test_fieldwork_names_what_is_thin(plain):
 
 def test_fieldwork_without_intervals_or_use(make):
     text = " ".join(fieldwork(make.run({"dunlin": 0, "redshank": 2})))
-    assert "The fewest animals were watched of dunlin: 0." in text
+    assert "Fewest animals: dunlin (0)." in text
     assert "widest" not in text
     assert "nan" not in text
 
