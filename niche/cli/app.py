@@ -286,14 +286,17 @@ def _folder(what: str, study: Path, out: Path, quiet: bool, chosen: Chosen) -> N
     from niche.analysis import run_study
     from niche.cautions import BY_TABLE
     from niche.logs import open_study
-    from niche.report import write_maps, write_report
+    from niche.report import check_folder, summarise, write_maps, write_report
 
+    check_folder(out)
     set_study = chosen.put_into(open_study(study))
     with progress("Resampling", quiet) as report_progress:
         run = run_study(set_study, progress=report_progress)
     command = shlex.join(["niche", *sys.argv[1:]])
     write_it = write_report if what == "report" else write_maps
-    typer.echo(write_it(run, out, command=command))
+    typer.echo(write_it(run, out, command=command, study_file=study))
+    if what == "report" and not quiet:
+        typer.echo(f"\n{summarise(run).text()}")
     for line in () if quiet else run.analysis.notes:
         say(line)
     for line in dict.fromkeys((*BY_TABLE["usage"], *(BY_TABLE["outcome"] if what == "report" else ()))):

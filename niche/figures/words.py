@@ -8,6 +8,7 @@ import textwrap
 import unicodedata
 from collections.abc import Sequence
 
+from niche.analysis.notes import level as level
 from niche.resampling.intervals import FEWEST_UNITS
 
 UNDEFINED = "not defined"
@@ -56,11 +57,6 @@ def percent(share: float) -> str:
     if rounded == "100%" and share < 1 - 1e-9:  # a sum of shares may miss 1 by its rounding
         return ">99%"
     return rounded
-
-
-def level(confidence: float) -> str:
-    """The level of an interval: "95%", "97.5%"."""
-    return f"{100 * confidence:.6g}%"
 
 
 def span(low: float, high: float, *, shares: bool = False) -> str:

@@ -15,7 +15,7 @@ from niche.figures.drawing import Drawing
 from niche.figures.saving import inline_svg
 from niche.figures.windows import windows
 from niche.figures.words import isolated, no_interval
-from niche.report import rows
+from niche.report import pair_rows, rows
 from niche.report.fieldwork import fieldwork
 from niche.report.references import references
 from niche.report.summary import summarise
@@ -94,13 +94,13 @@ def _content(run: Run, figures: Mapping[str, tuple[Drawing, str]], record: Mappi
         "core_share": f"{100 * analysis.options.core:g}%",
         "breadth": rows.breadth_table(run) if analysis.breadth else None,
         "several": several,
-        "overlap": rows.overlap_table(run) if several else None,
-        "other_overlap": rows.other_overlap_table(run) if several else None,
+        "overlap": pair_rows.overlap_table(run) if several else None,
+        "other_overlap": pair_rows.other_overlap_table(run) if several else None,
         "competing": competing,
-        "coefficients": rows.coefficients_table(run) if competing else None,
-        "windows": rows.windows_table(run, windows(analysis, capacities(run))) if competing else None,
-        "capacity": rows.capacity_table(run),
-        "outcome": rows.outcome_table(run),
+        "coefficients": pair_rows.coefficients_table(run) if competing else None,
+        "windows": pair_rows.windows_table(run, windows(analysis, capacities(run))) if competing else None,
+        "capacity": pair_rows.capacity_table(run),
+        "outcome": pair_rows.outcome_table(run),
         "rests_on": interval_rests_on(analysis.usage, analysis.options),
         "without": _without(run),
         "assumptions": rows.assumptions_table(run),

@@ -159,6 +159,21 @@ def test_start_writes_what_check_accepts(tmp_path):
     assert "not empty" in again.stderr
 
 
+def test_report_prints_its_folder_and_the_summary(log, tmp_path):
+    result = run("report", str(log), "--out", str(tmp_path / "r"), "--resamples", "100")
+    assert result.exit_code == 0
+    assert result.stdout.splitlines()[0] == str(tmp_path / "r" / "report.html")
+    assert "dunlin and redshank: Pianka’s overlap is 1.00" in result.stdout
+
+
+def test_a_folder_of_others_is_refused_before_the_work(log, tmp_path):
+    (tmp_path / "mine").mkdir()
+    (tmp_path / "mine" / "thesis.txt").write_text("do not lose", encoding="utf-8")
+    result = run("report", str(log), "--out", str(tmp_path / "mine"))
+    assert result.exit_code == 1
+    assert (tmp_path / "mine" / "thesis.txt").exists()
+
+
 def test_a_study_without_rows_says_that_there_is_nothing_to_compute(tmp_path):
     run("start", str(tmp_path / "study"))
     result = run("report", str(tmp_path / "study"), "--out", str(tmp_path / "report"))
