@@ -5,6 +5,7 @@ A Usage is a sum. Two Usages over the same zones add, unit by unit, so a log can
 
 from __future__ import annotations
 
+import re
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Literal
@@ -36,7 +37,7 @@ class Usage:
     zones : tuple of Z str
         Every zone that could be used, in the order of the layout, used or not.
     units : tuple of S tuples of str
-        Names of the sampling units of each species, sorted.
+        Names of the sampling units of each species, sorted; numbers in them by size.
     time : tuple of S arrays, each (U_s, Z)
         Milliseconds in each zone (whole numbers) or numbers of what ``measure`` says, or whatever amounts were given to
         `from_units`. Never divided by effort: see `use`.
@@ -84,7 +85,7 @@ class Usage:
         Parameters
         ----------
         use : mapping of species name to array_like, shape (units, zones)
-            Time or counts, finite and at least 0. A unit without any use is left out: it tells nothing about zones.
+            Time or counts, finite and at least 0.
         zones : sequence of str
         visits : mapping of species name to array_like, shape (units, zones), optional
             Counts of visits, for Morisita's index.
@@ -117,9 +118,8 @@ class Usage:
         time, counts, labels = [], [], []
         for species, given in use.items():
             amounts = checked(given, species, "use", len(names))
-            seen = amounts.sum(axis=1) > 0
-            time.append(amounts[seen])
-            labels.append(tuple(str(i + 1) for i in np.flatnonzero(seen)))
+            time.append(amounts)
+            labels.append(tuple(str(i + 1) for i in range(len(amounts))))
             if visits is not None:
                 if species not in visits:
                     raise ValueRuleError(
@@ -128,7 +128,7 @@ class Usage:
                 count = checked(visits[species], species, "visits", len(names))
                 if count.shape != amounts.shape:
                     raise ValueRuleError(f"visits of {species!r} has shape {count.shape}; use has {amounts.shape}.")
-                counts.append(count[seen])
+                counts.append(count)
         share = None
         if availability is not None:
             share = shares(checked(np.asarray(availability)[None], "availability", "availability", len(names))[0])
@@ -188,15 +188,16 @@ class Usage:
         units, time, counts = [], [], []
         for name in species:
             mine = who == name
-            labels, row = np.unique(names[mine].astype(str), return_inverse=True)
+            labels = sorted(set(names[mine]), key=_natural)
+            at = {label: number for number, label in enumerate(labels)}
+            row = np.array([at[label] for label in names[mine]], dtype=np.intp)
             tally = np.zeros((len(labels), len(zones)), dtype=np.int64)
             count = np.zeros_like(tally)
             np.add.at(tally, (row, column[mine]), amount[mine])
             np.add.at(count, (row, column[mine]), 1)
-            used = tally.sum(axis=1) > 0
-            units.append(tuple(labels[used].tolist()))
-            time.append(tally[used])
-            counts.append(count[used])
+            units.append(tuple(labels))
+            time.append(tally)
+            counts.append(count)
         effort = study_effort(study, looked_at)
         usage = cls(
             species,
@@ -228,7 +229,7 @@ class Usage:
         time: list[NDArray[np.number]] = []
         counts: list[NDArray[np.number]] = []
         for s in range(len(self.species)):
-            names = sorted({*self.units[s], *other.units[s]})
+            names = sorted({*self.units[s], *other.units[s]}, key=_natural)
             row = {name: number for number, name in enumerate(names)}
             units.append(tuple(names))
             for gathered, field in ((time, "time"), (counts, "visits")):
@@ -241,6 +242,19 @@ class Usage:
                 gathered.append(total)
         return replace(
             self, units=tuple(units), time=tuple(time), visits=tuple(counts) if self.visits is not None else None
+        )
+
+    def with_use(self) -> Usage:
+        """The same without units that have no use: they tell nothing about zones, and are no unit of a resample."""
+        used = [t.sum(axis=1) > 0 for t in self.time]
+        return replace(
+            self,
+            units=tuple(
+                tuple(n for n, u in zip(names, us, strict=True) if u)
+                for names, us in zip(self.units, used, strict=True)
+            ),
+            time=tuple(t[u] for t, u in zip(self.time, used, strict=True)),
+            visits=None if self.visits is None else tuple(v[u] for v, u in zip(self.visits, used, strict=True)),
         )
 
     @property
@@ -296,3 +310,8 @@ class Usage:
     def unit_counts(self) -> NDArray[np.int64]:
         """Number of sampling units of each species, shape (S,)."""
         return np.array([len(names) for names in self.units], dtype=np.int64)
+
+
+def _natural(name: str) -> list[tuple[int, str]]:
+    """Sorting key under which ``2`` comes before ``10``."""
+    return [(int(part), part) if part.isascii() and part.isdigit() else (-1, part) for part in re.split(r"(\d+)", name)]

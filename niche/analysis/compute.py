@@ -92,6 +92,7 @@ def analyse(
     np.float64(0.7894)
     """
     options = Options(resamples, confidence, seed, weighting, core)
+    usage = usage.with_use()
     _check(options, usage, demand, capacity, indices)
     wanted = _wanted(usage, indices)
     rates = np.array([1.0 if demand is None else demand[name] for name in usage.species])

@@ -6,10 +6,11 @@ from collections.abc import Iterator, Mapping
 from itertools import combinations
 from typing import TYPE_CHECKING
 
+from niche.indices.catalogue import BREADTH, OVERLAP
 from niche.resampling.intervals import FEW_UNITS, FEWEST_UNITS
 
 if TYPE_CHECKING:
-    from niche.analysis.results import Coefficients, Estimate, Options
+    from niche.analysis.results import Analysis, Coefficients, Estimate, Options
     from niche.indices.products import Floats
     from niche.usage import Usage
 
@@ -32,6 +33,12 @@ def notes_on(
         *_no_capacity(usage, coefficients, capacity),
         *_effort(usage),
     )
+
+
+def _title(name: str) -> str:
+    """An index as the tables of a report call it."""
+    index = {**BREADTH, **OVERLAP}.get(name)
+    return "α, β" if index is None else index.title
 
 
 def _few_units(usage: Usage) -> Iterator[str]:
@@ -58,14 +65,14 @@ def _lost_draws(
         name, most = max(undefined.items(), key=lambda item: item[1])
         yield (
             f"Some resamples hold no two different {usage.unit}s of a species, or none that share a zone, and give no "
-            f"value: up to {most} of {options.resamples} ({name}). They are left out of the intervals and counted."
+            f"value: up to {most} of {options.resamples} ({_title(name)}). They are left out of the intervals and counted."
         )
     clipped = {name: int(e.clipped.max()) for name, e in estimates.items() if e.clipped.any()}
     if clipped:
         name, most = max(clipped.items(), key=lambda item: item[1])
         yield (
             f"Sampling noise took some resamples outside the range an index can have: up to {most} of "
-            f"{options.resamples} ({name}). They are counted at the edge of the range."
+            f"{options.resamples} ({_title(name)}). They are counted at the edge of the range."
         )
 
 
@@ -88,8 +95,8 @@ def _plug_in(breadth: Mapping[str, Estimate], overlap: Mapping[str, Estimate]) -
     names = [name for name in ("shannon", "schoener") if name in breadth or name in overlap]
     if names:
         yield (
-            f"Values of {' and '.join(names)} are pooled: with few animals they lean low, and so do their intervals. "
-            "Values from products leave out each animal’s product with itself and do not."
+            f"Values of {' and '.join(map(_title, names))} are pooled: with few animals they lean low, and so do "
+            "their intervals. Values from products leave out each animal’s product with itself and do not."
         )
 
 
@@ -117,10 +124,26 @@ def _effort(usage: Usage) -> Iterator[str]:
         )
 
 
+def level(confidence: float) -> str:
+    """Confidence as a percentage, with a decimal only where it has one."""
+    return f"{100 * confidence:.10g}%"
+
+
 def interval_rests_on(usage: Usage, options: Options) -> str:
     """What every interval of an analysis rests on, in one line for captions and tables."""
     counts = ", ".join(f"{name} {n}" for name, n in zip(usage.species, usage.unit_counts.tolist(), strict=True))
     return (
-        f"{options.confidence:.0%} percentile intervals, {options.resamples} resamples of {usage.unit}s ({counts}), "
+        f"{level(options.confidence)} percentile intervals, {options.resamples} resamples of {usage.unit}s ({counts}), "
         f"seed {options.seed}."
+    )
+
+
+def cores_in_words(analysis: Analysis) -> tuple[str, ...]:
+    """What the core zones of each species really hold, which is mostly more than the share asked for."""
+    usage, use = analysis.usage, analysis.use
+    return tuple(
+        f"Core of {name}, {share:.0%} of its use: "
+        f"{', '.join(z for z, inside in zip(usage.zones, core, strict=True) if inside)}."
+        for name, core, share in zip(usage.species, use.core, use.core_share, strict=True)
+        if core.any()
     )

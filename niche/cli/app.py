@@ -52,6 +52,7 @@ def _common(
 
 
 @app.command()
+@errors_translated()
 def start(directory: Annotated[Path, typer.Argument(metavar="DIR", help="New folder for the study.")]) -> None:
     """Write a starter study: a commented study.toml, an empty log sheet and a zone sheet.
 
@@ -59,13 +60,13 @@ def start(directory: Annotated[Path, typer.Argument(metavar="DIR", help="New fol
     """
     from niche.study.starter import write_starter
 
-    with errors_translated():
-        for path in write_starter(directory):
-            typer.echo(path)
-        say(f"Fill in the sheets, then: niche check {directory}")
+    for path in write_starter(directory):
+        typer.echo(path)
+    say(f"Fill in the sheets, then: niche check {directory}")
 
 
 @app.command()
+@errors_translated()
 def check(
     study: StudyPath,
     form: FormatOption = Format.table,
@@ -89,22 +90,21 @@ def check(
     from niche.cli.render import render, write
     from niche.logs import open_study, read_logs
 
-    with errors_translated():
-        with progress("Reading logs", quiet) as report_progress:
-            opened = open_study(study)
-            log = read_logs(opened, report_progress)
-        if form is Format.table:
-            write(summary(log), out)
-        else:
-            write(render(log.ledger.table(), "ledger", form), out)
-        if log.ledger.stops:
-            if clean is not None:
-                say(f"niche: {clean}: nothing is saved, because problems stop the work.")
-            raise typer.Exit(Exit.STOPPED)
+    with progress("Reading logs", quiet) as report_progress:
+        opened = open_study(study)
+        log = read_logs(opened, report_progress)
+    if form is Format.table:
+        write(summary(log), out)
+    else:
+        write(render(log.ledger.table(), "ledger", form), out)
+    if log.ledger.stops:
         if clean is not None:
-            from niche.logs.clean import write_clean
+            say(f"niche: {clean}: nothing is saved, because problems stop the work.")
+        raise typer.Exit(Exit.STOPPED)
+    if clean is not None:
+        from niche.logs.clean import write_clean
 
-            say(f"Saved: {write_clean(log, opened, clean)}")
+        say(f"Saved: {write_clean(log, opened, clean)}")
 
 
 def _table(
@@ -118,25 +118,26 @@ def _table(
 ) -> None:
     """What the commands that print one table share."""
     from niche.analysis import run_study
-    from niche.analysis.notes import interval_rests_on
+    from niche.analysis.notes import cores_in_words, interval_rests_on
     from niche.cautions import BY_TABLE
     from niche.cli.render import render, write
     from niche.logs import open_study
 
-    with errors_translated():
-        set_study = chosen.put_into(open_study(study))
-        with progress("Resampling", quiet) as report_progress:
-            analysis = run_study(set_study, indices=indices, progress=report_progress).analysis
-        notes = (interval_rests_on(analysis.usage, analysis.options), *analysis.notes)
-        write(render(analysis.table(name), name, form, notes, BY_TABLE[name]), out)
-        for line in () if quiet else notes:
-            say(line)
-        for line in BY_TABLE[name]:
-            say(f"Caution: {line}")
+    set_study = chosen.put_into(open_study(study))
+    with progress("Resampling", quiet) as report_progress:
+        analysis = run_study(set_study, indices=indices, progress=report_progress).analysis
+    cores = cores_in_words(analysis) if name == "usage" else ()
+    notes = (*cores, interval_rests_on(analysis.usage, analysis.options), *analysis.notes)
+    write(render(analysis.table(name), name, form, notes, BY_TABLE[name]), out)
+    for line in () if quiet else notes:
+        say(line)
+    for line in BY_TABLE[name]:
+        say(f"Caution: {line}")
 
 
 @app.command()
 @with_settings
+@errors_translated()
 def usage(
     study: StudyPath,
     form: FormatOption = Format.table,
@@ -156,6 +157,7 @@ def usage(
 
 @app.command()
 @with_settings
+@errors_translated()
 def breadth(
     study: StudyPath,
     form: FormatOption = Format.table,
@@ -175,6 +177,7 @@ def breadth(
 
 @app.command()
 @with_settings
+@errors_translated()
 def overlap(
     study: StudyPath,
     form: FormatOption = Format.table,
@@ -196,6 +199,7 @@ def overlap(
 
 @app.command()
 @with_settings
+@errors_translated()
 def compete(
     study: StudyPath,
     form: FormatOption = Format.table,
@@ -215,6 +219,7 @@ def compete(
 
 @app.command()
 @with_settings
+@errors_translated()
 def outcome(
     study: Annotated[Path | None, typer.Argument(metavar="STUDY", help="Study; or give all four numbers.")] = None,
     alpha: Annotated[float | None, typer.Option(help="Effect of one of species 2 on species 1.")] = None,
@@ -250,18 +255,18 @@ def outcome(
     from niche.dynamics import outcome as decide
     from niche.tables import outcome_of_numbers
 
-    with errors_translated():
-        result = decide(alpha=alpha, beta=beta, k1=k1, k2=k2)  # type: ignore[arg-type]
-        notes = (result.detail, window_in_words(result))
-        write(render(outcome_of_numbers(result), "outcome", form, notes, (OUTCOME, REVIEW)), out)
-        for line in () if quiet else notes:
-            say(line)
-        for line in (OUTCOME, REVIEW):
-            say(f"Caution: {line}")
+    result = decide(alpha=alpha, beta=beta, k1=k1, k2=k2)  # type: ignore[arg-type]
+    notes = (result.detail, window_in_words(result))
+    write(render(outcome_of_numbers(result), "outcome", form, notes, (OUTCOME, REVIEW)), out)
+    for line in () if quiet else notes:
+        say(line)
+    for line in (OUTCOME, REVIEW):
+        say(f"Caution: {line}")
 
 
 @app.command("map")
 @with_settings
+@errors_translated()
 def draw_map(
     study: StudyPath,
     out: OutFolder = Path("maps"),
@@ -278,6 +283,7 @@ def draw_map(
 
 @app.command()
 @with_settings
+@errors_translated()
 def report(
     study: StudyPath,
     out: OutFolder = Path("report"),
@@ -299,16 +305,18 @@ def _folder(what: str, study: Path, out: Path, quiet: bool, chosen: Chosen) -> N
     from niche.analysis import run_study
     from niche.cautions import BY_TABLE
     from niche.logs import open_study
-    from niche.report import write_maps, write_report
+    from niche.report import check_folder, summarise, write_maps, write_report
 
-    with errors_translated():
-        set_study = chosen.put_into(open_study(study))
-        with progress("Resampling", quiet) as report_progress:
-            run = run_study(set_study, progress=report_progress)
-        command = shlex.join(["niche", *sys.argv[1:]])
-        write_it = write_report if what == "report" else write_maps
-        typer.echo(write_it(run, out, command=command))
-        for line in () if quiet else run.analysis.notes:
-            say(line)
-        for line in dict.fromkeys((*BY_TABLE["usage"], *(BY_TABLE["outcome"] if what == "report" else ()))):
-            say(f"Caution: {line}")
+    check_folder(out)
+    set_study = chosen.put_into(open_study(study))
+    with progress("Resampling", quiet) as report_progress:
+        run = run_study(set_study, progress=report_progress)
+    command = shlex.join(["niche", *sys.argv[1:]])
+    write_it = write_report if what == "report" else write_maps
+    typer.echo(write_it(run, out, command=command, study_file=study))
+    if what == "report" and not quiet:
+        typer.echo(f"\n{summarise(run).text()}")
+    for line in () if quiet else run.analysis.notes:
+        say(line)
+    for line in dict.fromkeys((*BY_TABLE["usage"], *(BY_TABLE["outcome"] if what == "report" else ()))):
+        say(f"Caution: {line}")

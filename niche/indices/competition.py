@@ -66,7 +66,7 @@ def within_range(c: Floats) -> tuple[Floats, NDArrayBool]:
     Returns
     -------
     limited : array, shape (..., S, S)
-        ``C`` with off-diagonal ``C_st`` at most ``√(C_ss C_tt)``.
+        ``C`` with off-diagonal ``C_st`` at most ``√(C_ss C_tt)``; NaN where a species' own product is 0.
     over : array of bool, shape (..., S, S)
         Which pairs were brought back.
 
@@ -81,7 +81,9 @@ def within_range(c: Floats) -> tuple[Floats, NDArrayBool]:
     over = overlap > 1.0
     species = np.arange(c.shape[-1])
     over[..., species, species] = False
-    return np.where(over, c / np.where(over, overlap, 1.0), c), over
+    # A species whose units share no zone has an infinite overlap, which no factor brings back: undefined, not 0.
+    factor = np.where(np.isinf(overlap), np.nan, np.where(over, overlap, 1.0))
+    return c / factor, over & np.isfinite(overlap)
 
 
 NDArrayBool = np.ndarray[tuple[int, ...], np.dtype[np.bool_]]

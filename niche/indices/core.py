@@ -32,7 +32,8 @@ def core_zones(use: Floats, share: float = 0.5) -> NDArray[np.bool_]:
     order = np.argsort(-use, axis=-1, kind="stable")
     descending = np.take_along_axis(use, order, axis=-1)
     before = np.cumsum(descending, axis=-1) - descending
-    inside = (before < share * use.sum(axis=-1, keepdims=True)) & (descending > 0)
+    # A share that is reached exactly must not be missed by rounding, as it would be among proportions.
+    inside = (before < (1.0 - 1e-12) * share * use.sum(axis=-1, keepdims=True)) & (descending > 0)
     member = np.empty(use.shape, dtype=bool)
     np.put_along_axis(member, order, inside, axis=-1)
     return member

@@ -122,7 +122,14 @@ class Ledger:
 
         counted = [
             Entry(
-                file, None, "", f"{rows} rows" if rows else "parts of rows", "", action.replace("_", " "), action, milliseconds
+                file,
+                None,
+                "",
+                f"{rows} rows" if rows else "parts of rows",
+                "",
+                action.replace("_", " "),
+                action,
+                milliseconds,
             )
             for (file, action), (rows, milliseconds) in self.by_file.items()
             if rows or milliseconds

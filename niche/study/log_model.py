@@ -80,7 +80,7 @@ class FileForm(Section):
     @field_validator("delimiter")
     @classmethod
     def _parts_cells(cls, sign: str | None) -> str | None:
-        if sign is not None and (sign.isalnum() or sign in "\"\r\n\0.-:+ " or not (sign.isprintable() or sign == "\t")):
+        if sign is not None and (sign.isalnum() or sign in '"\r\n\0.-:+ ' or not (sign.isprintable() or sign == "\t")):
             raise ValueError(f"{sign!r} cannot part cells; give a sign that no cell holds, such as ; or \\t")
         return sign
 
@@ -291,7 +291,11 @@ class Logs(Section):
             raise ValueError(
                 "a bout ends by its `end` or its `duration` column: name one of the two under `logs.columns`"
             )
-        if columns.end is None and columns.duration is None and (self.clock.format != "iso" or columns.date is not None):
+        if (
+            columns.end is None
+            and columns.duration is None
+            and (self.clock.format != "iso" or columns.date is not None)
+        ):
             raise ValueError(
                 "a bout ends by its `end` or its `duration` column: name one of the two under `logs.columns`. Only with "
                 "`clock.format` = 'iso' and no `columns.date` may both be left out: then each start cell holds an "
