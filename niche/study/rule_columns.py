@@ -1,4 +1,4 @@
-"""Columns that a recording rule does without, so that a study need not say that they are absent."""
+"""What a recording rule says about columns, so that a study need not: those it does without, and a bout's start."""
 
 from __future__ import annotations
 
@@ -6,7 +6,9 @@ from typing import Any
 
 
 def with_rule_columns(logs: Any) -> Any:
-    """The ``[logs]`` table with None for each column that its rule does without and the study does not name.
+    """The ``[logs]`` table with what its rule says about columns that the study does not name.
+
+    A bout begins in the column ``start``; for a column that the rule does without, None stands.
 
     A tally sheet has zones as headings and no zone column; a tag table tells animal and species of a read; a map of
     antennas or a deployments table tells the zone; at a camera animals are mostly not told apart.
@@ -18,8 +20,10 @@ def with_rule_columns(logs: Any) -> Any:
     """
     if not isinstance(logs, dict) or not isinstance(named := logs.get("columns", {}), dict):
         return logs
-    absent: dict[str, None] = {}
-    rule = logs.get("rule")
+    absent: dict[str, str | None] = {}
+    rule = logs.get("rule", "bouts")
+    if rule == "bouts" and _key(logs.get("file"), "standard") is None:
+        absent["start"] = "start"
     if rule == "tallies":
         absent["zone"] = None
     if rule == "reads":

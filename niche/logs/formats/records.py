@@ -13,13 +13,16 @@ from collections.abc import Iterator
 from typing import Any
 
 import pyarrow as pa
+import pyarrow.compute as pc
 from pyarrow import csv as fast_csv
 
 from niche.errors import LogError
-from niche.logs.formats.byte_source import LONGEST_LINE
 from niche.logs.formats.counting import line_end
 
-csv.field_size_limit(2 * LONGEST_LINE)
+LONGEST_CELL = 1_000_000
+"""Most letters of a cell."""
+
+csv.field_size_limit(LONGEST_CELL)
 
 
 def _lines_with_quotes(chunk: bytes) -> Iterator[tuple[int, int]]:
@@ -64,7 +67,7 @@ class Records:
         try:
             record = next(self._reader, None)
         except csv.Error as error:
-            where = f"line {first}" if self._line <= first else f"lines {first} to {self._line}"
+            where = f"line {first}" if self._line <= first else f"line {first} to line {self._line}"
             raise LogError(
                 f"{self.name}: {where}: {error}. A quoted cell must end with a quote before the next "
                 "comma or line end; two quotes in a row stand for one."
@@ -96,6 +99,8 @@ class Records:
             return None
         lines = chunk.count(b"\n") + (not chunk.endswith(b"\n"))
         if table.num_rows != lines:
+            return None
+        if any((pc.max(pc.binary_length(column)).as_py() or 0) > LONGEST_CELL for column in table.columns):
             return None
         first = self._line + 1
         self._line += lines

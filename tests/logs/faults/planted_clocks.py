@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from register import DURATIONS, HEADER, Found, Planted, lengths, starts
+from fault_register import DURATIONS, HEADER, Found, Planted, lengths, starts
 
 BERLIN = 'time_zone = "Europe/Berlin"'
 DATE_AND_TIME = 'session = "session"\ndate = "date"\nstart = "start"\nend = "end"'

@@ -5,7 +5,7 @@ from __future__ import annotations
 import io
 from datetime import datetime
 
-from register import DURATIONS, HEADER, SOUND, Found, Planted, lengths
+from fault_register import DURATIONS, HEADER, SOUND, Found, Planted, lengths
 
 TALLY = "species,animal,session,upper sand,upper mud,middle sand,middle mud,lower sand,lower mud\n"
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from register import BOUTS, HEADER, SOUND, Found, Planted, lengths
+from fault_register import BOUTS, HEADER, SOUND, Found, Planted, lengths
 
 OBSERVED = HEADER.replace("end\n", "end,observer\n")
 SITED = HEADER.replace("end\n", "end,site\n")

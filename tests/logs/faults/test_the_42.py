@@ -10,7 +10,7 @@ import planted_files
 import planted_rows
 import pytest
 from conftest import check_closed
-from register import Planted
+from fault_register import Planted
 
 from niche.errors import NicheError
 from niche.logs import Log

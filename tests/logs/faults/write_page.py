@@ -15,7 +15,7 @@ sys.path.insert(0, str(HERE))
 import planted_clocks  # noqa: E402
 import planted_files  # noqa: E402
 import planted_rows  # noqa: E402
-from register import Planted  # noqa: E402
+from fault_register import Planted  # noqa: E402
 
 from niche.errors import NicheError  # noqa: E402
 

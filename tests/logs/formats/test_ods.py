@@ -131,7 +131,10 @@ def test_spaces_and_breaks_of_a_text_are_kept_and_remarks_left_out(book):
         note = b"<office:annotation><text:p>a remark</text:p></office:annotation>"
         return xml.replace(
             b"<text:p>RW</text:p>",
-            note + b'<text:p>R<text:s text:c="2"/>' + note + b"W</text:p><text:p>x<text:tab/>y</text:p>",
+            note
+            + b'<text:p>R<text:s text:c="2"/>'
+            + note
+            + b"<text:span>W</text:span></text:p><text:p>x<text:tab/>y</text:p>",
         )
 
     assert book(bout(), change=change).column("animal") == ["R  W\nx\ty"]

@@ -40,6 +40,11 @@ def test_a_listed_name_is_no_total(flat, zone):
     assert flat.pieces("a.csv", flat.text([flat.header, flat.bout(zone)])).found == []
 
 
+@pytest.mark.parametrize("animal", ["Meander", "Summer", "Totalus", "Averager", "Gesamtkunst"])
+def test_a_name_that_begins_like_a_total_is_none(flat, animal):
+    assert flat.pieces("a.csv", flat.text([flat.header, flat.bout(animal=animal)])).found == []
+
+
 def test_blank_rows_are_set_aside(flat):
     content = flat.text([flat.header, flat.bout()]) + "\n,,,,\n , ,\t,,\n" + flat.text([flat.bout()])
     taken = flat.pieces("a.csv", content)
@@ -90,9 +95,9 @@ def test_rows_swallowed_by_a_stray_quote_stop(flat):
 @pytest.mark.parametrize(
     ("lines", "where"),
     [
-        (['dunlin,RW,"upper sand,t,5'], "lines 2 to 3"),
+        (['dunlin,RW,"upper sand,t,5'], "line 2 to line 3"),
         (['dunlin,RW,"upper" sand,t,5'], "line 2"),
-        (['dunlin,"RW,x', 'y" z,u,t,5'], "lines 2 to 3"),
+        (['dunlin,"RW,x', 'y" z,u,t,5'], "line 2 to line 3"),
     ],
 )
 def test_quotes_that_do_not_close_are_an_error_with_their_lines(flat, lines, where):
@@ -104,6 +109,16 @@ def test_quotes_that_do_not_close_are_an_error_with_their_lines(flat, lines, whe
 def test_a_quote_inside_a_cell_that_does_not_begin_with_one_is_a_letter(flat):
     taken = flat.pieces("a.csv", flat.text([flat.header, flat.bout(animal='5" bill')]))
     assert (taken.records[0][1], taken.found) == ('5" bill', [])
+
+
+@pytest.mark.parametrize(("letters", "fits"), [(1_000_000, True), (1_000_001, False)])
+def test_a_cell_of_more_than_a_million_letters_is_none(flat, letters, fits):
+    content = flat.text([flat.header, *[flat.bout()] * 30, flat.bout(animal="x" * letters)])
+    if fits:
+        assert len(flat.pieces("a.csv", content).records[-1][1]) == letters
+    else:
+        with pytest.raises(LogError, match="a.csv: line 32: field larger than field limit"):
+            flat.pieces("a.csv", content)
 
 
 @pytest.mark.parametrize("end", ["\n", "\r\n", "\r"])
