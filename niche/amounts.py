@@ -21,14 +21,18 @@ def same(a: NDArray[np.float64] | None, b: NDArray[np.float64] | None) -> bool:
 
 def shares(amounts: NDArray[np.float64]) -> NDArray[np.float64]:
     """Amounts over their sum."""
-    if amounts.sum() <= 0:
+    if amounts.max(initial=0) <= 0:
         raise ValueRuleError("availability adds up to 0; at least one zone must be available.")
+    amounts = amounts / amounts.max()  # or the sum of very large amounts is infinite
     return np.asarray(amounts / amounts.sum())
 
 
 def checked(given: ArrayLike, species: str, what: str, zones: int) -> NDArray[np.float64]:
     """Amounts as a (units, zones) array of finite numbers at least 0."""
-    amounts = np.array(given, dtype=np.float64)
+    try:
+        amounts = np.array(given, dtype=np.float64)
+    except (TypeError, ValueError) as error:
+        raise ValueRuleError(f"{what} of {species!r} is no table of numbers: {error}.") from None
     if amounts.ndim != 2 or amounts.shape[1] != zones:
         raise ValueRuleError(f"{what} of {species!r} has shape {amounts.shape}; it must be (units, {zones}).")
     if not np.isfinite(amounts).all() or (amounts < 0).any():

@@ -8,7 +8,7 @@ from __future__ import annotations
 import re
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING, Literal, cast
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -115,6 +115,11 @@ class Usage:
             raise ValueRuleError(f"zones are {list(names)}; each zone has a name of its own.")
         if not use:
             raise ValueRuleError("use names no species; give at least one.")
+        if unit not in ("animal", "session"):
+            raise ValueRuleError(f"unit is {unit!r}; it must be 'animal' or 'session'.")
+        strangers = [species for species in visits or {} if species not in use]
+        if strangers:
+            raise ValueRuleError(f"visits names {strangers[0]!r}, which use does not.")
         time, counts, labels = [], [], []
         for species, given in use.items():
             amounts = checked(given, species, "use", len(names))
@@ -131,7 +136,7 @@ class Usage:
                 counts.append(count)
         share = None
         if availability is not None:
-            share = shares(checked(np.asarray(availability)[None], "availability", "availability", len(names))[0])
+            share = shares(checked([availability], "all zones", "availability", len(names))[0])
         hours = None if effort is None else checked(np.asarray(effort)[None], "effort", "effort", len(names))[0]
         usage = cls(
             tuple(use),
@@ -225,6 +230,8 @@ class Usage:
             raise ValueRuleError("Usages add only with the same effort; give the effort of all logs together to both.")
         if (self.visits is None) != (other.visits is None):
             raise ValueRuleError("Usages add only if both or neither count visits.")
+        if not same(self.availability, other.availability):
+            raise ValueRuleError("Usages add only over the same availability.")
         units: list[tuple[str, ...]] = []
         time: list[NDArray[np.number]] = []
         counts: list[NDArray[np.number]] = []
@@ -312,6 +319,7 @@ class Usage:
         return np.array([len(names) for names in self.units], dtype=np.int64)
 
 
-def _natural(name: str) -> list[tuple[int, str]]:
-    """Sorting key under which ``2`` comes before ``10``."""
-    return [(int(part), part) if part.isascii() and part.isdigit() else (-1, part) for part in re.split(r"(\d+)", name)]
+def _natural(name: str) -> list[tuple[int, str, str]]:
+    """Sorting key under which ``2`` comes before ``10``: of two numbers the one with more digits is the larger."""
+    parts = ((part, part.lstrip("0")) for part in re.split(r"([0-9]+)", name))
+    return [(len(bare), bare, part) if part.isdigit() and part.isascii() else (-1, part, "") for part, bare in parts]

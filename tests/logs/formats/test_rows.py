@@ -117,7 +117,7 @@ def test_a_cell_of_more_than_a_million_letters_is_none(flat, letters, fits):
     if fits:
         assert len(flat.pieces("a.csv", content).records[-1][1]) == letters
     else:
-        with pytest.raises(LogError, match="a.csv: line 32: field larger than field limit"):
+        with pytest.raises(LogError, match=r"a.csv: line 32: field larger than field limit"):
             flat.pieces("a.csv", content)
 
 
