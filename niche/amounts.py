@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
-from typing import TYPE_CHECKING
+import re
+from collections.abc import Mapping, Sequence
+from typing import TYPE_CHECKING, cast
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -11,7 +12,10 @@ from numpy.typing import ArrayLike, NDArray
 from niche.errors import ValueRuleError
 
 if TYPE_CHECKING:
+    import pandas as pd
+
     from niche.study.model import Study
+    from niche.usage import Usage
 
 
 def same(a: NDArray[np.float64] | None, b: NDArray[np.float64] | None) -> bool:
@@ -41,6 +45,55 @@ def checked(given: ArrayLike, species: str, what: str, zones: int) -> NDArray[np
     return amounts
 
 
+def checked_row(given: ArrayLike, what: str, zones: int) -> NDArray[np.float64]:
+    """One amount a zone, finite and at least 0."""
+    row: NDArray[np.float64] = checked(cast("ArrayLike", [given]), "all zones", what, zones)[0]
+    return row
+
+
+def check_addable(a: Usage, b: Usage) -> None:
+    """Raise unless two Usages are of one study, so that their sum means something."""
+    if (a.species, a.zones, a.unit) != (b.species, b.zones, b.unit):
+        raise ValueRuleError("Usages add only over the same species, zones and unit.")
+    if a.measure != b.measure:
+        raise ValueRuleError(f"{a.measure} and {b.measure} do not add.")
+    if a.by_effort != b.by_effort or not same(a.effort, b.effort):
+        raise ValueRuleError("Usages add only with the same effort; give the effort of all logs together to both.")
+    if (a.visits is None) != (b.visits is None):
+        raise ValueRuleError("Usages add only if both or neither count visits.")
+    if not same(a.availability, b.availability):
+        raise ValueRuleError("Usages add only over the same availability.")
+
+
+def refuse_strangers(visits: pd.DataFrame, zones: Sequence[str], species: Sequence[str]) -> None:
+    """Raise on a zone or species that the study does not have: a look-up would drop it, and its time with it."""
+    for what, known in (("zone", zones), ("species", species)):
+        strangers = sorted(set(visits[what].unique()) - set(known))
+        if strangers:
+            raise ValueRuleError(f"visits hold {what} {strangers[0]!r}, which the study does not have.")
+
+
+def divided(amount: NDArray[np.number], effort: NDArray[np.float64]) -> NDArray[np.float64]:
+    """Amounts, shape (U, Z), over effort scaled to a mean of 1 over the zones looked at; 0 in the others."""
+    looked = effort > 0
+    scale = np.where(looked, effort, 1.0) / effort[looked].mean()
+    return np.asarray(np.where(looked, amount / scale, 0.0))
+
+
+def used_unseen(
+    zones: Sequence[str], effort: NDArray[np.float64] | None, time: Sequence[NDArray[np.number]]
+) -> str | None:
+    """Words on a zone that has use and was not looked at, if there is one."""
+    if effort is None:
+        return None
+    total = np.sum([amount.sum(axis=0) for amount in time], axis=0)
+    wrong = np.flatnonzero((effort == 0) & (total > 0))
+    if not len(wrong):
+        return None
+    zone = zones[int(wrong[0])]
+    return f"zone {zone!r} has use and 0 hours; a zone that was not looked at has no use. Correct its hours."
+
+
 def study_availability(study: Study) -> NDArray[np.float64] | None:
     """Availability of the study's zones as shares, in the order of the layout."""
     given = study.zones.availability
@@ -61,3 +114,9 @@ def study_effort(study: Study, looked_at: Mapping[str, bool] | None = None) -> N
     if looked_at is None or all(looked_at.values()):
         return None
     return np.array([np.nan if looked_at.get(zone, True) else 0.0 for zone in study.zones.names])
+
+
+def natural(name: str) -> list[tuple[int, str, str]]:
+    """Sorting key under which ``2`` comes before ``10``: of two numbers the one with more digits is the larger."""
+    parts = ((part, part.lstrip("0")) for part in re.split(r"([0-9]+)", name))
+    return [(len(bare), bare, part) if part.isdigit() and part.isascii() else (-1, part, "") for part, bare in parts]

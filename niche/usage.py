@@ -5,15 +5,25 @@ A Usage is a sum. Two Usages over the same zones add, unit by unit, so a log can
 
 from __future__ import annotations
 
-import re
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
-from typing import TYPE_CHECKING, Literal, cast
+from typing import TYPE_CHECKING, Literal
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from niche.amounts import checked, same, shares, study_availability, study_effort
+from niche.amounts import (
+    check_addable,
+    checked,
+    checked_row,
+    divided,
+    natural,
+    refuse_strangers,
+    shares,
+    study_availability,
+    study_effort,
+    used_unseen,
+)
 from niche.errors import StudyError, ValueRuleError
 
 if TYPE_CHECKING:
@@ -134,10 +144,8 @@ class Usage:
                 if count.shape != amounts.shape:
                     raise ValueRuleError(f"visits of {species!r} has shape {count.shape}; use has {amounts.shape}.")
                 counts.append(count)
-        share = None
-        if availability is not None:
-            share = shares(checked([availability], "all zones", "availability", len(names))[0])
-        hours = None if effort is None else checked(np.asarray(effort)[None], "effort", "effort", len(names))[0]
+        share = None if availability is None else shares(checked_row(availability, "availability", len(names)))
+        hours = None if effort is None else checked_row(effort, "effort", len(names))
         usage = cls(
             tuple(use),
             names,
@@ -150,7 +158,7 @@ class Usage:
             measure,
             by_effort,
         )
-        if (contradiction := usage._used_unseen()) is not None:
+        if (contradiction := used_unseen(usage.zones, usage.effort, usage.time)) is not None:
             raise ValueRuleError(contradiction)
         return usage
 
@@ -182,10 +190,7 @@ class Usage:
         zones = study.zones.names
         species = tuple(s.name for s in study.species) or tuple(sorted(visits["species"].unique()))
         seen = visits[visits["zone"] != ""]
-        for what, known in (("zone", zones), ("species", species)):
-            strangers = sorted(set(seen[what].unique()) - set(known))
-            if strangers:  # a look-up would drop them, and their time with them
-                raise ValueRuleError(f"visits hold {what} {strangers[0]!r}, which the study does not have.")
+        refuse_strangers(seen, zones, species)
         place = {zone: number for number, zone in enumerate(zones)}
         column = seen["zone"].map(place).to_numpy(dtype=np.intp)
         amount = seen["amount"].to_numpy(dtype=np.int64)
@@ -193,7 +198,7 @@ class Usage:
         units, time, counts = [], [], []
         for name in species:
             mine = who == name
-            labels = sorted(set(names[mine]), key=_natural)
+            labels = sorted(set(names[mine]), key=natural)
             at = {label: number for number, label in enumerate(labels)}
             row = np.array([at[label] for label in names[mine]], dtype=np.intp)
             tally = np.zeros((len(labels), len(zones)), dtype=np.int64)
@@ -216,27 +221,18 @@ class Usage:
             study.logs.measure,
             study.analysis.effort == "divide",
         )
-        if (contradiction := usage._used_unseen()) is not None:
+        if (contradiction := used_unseen(usage.zones, usage.effort, usage.time)) is not None:
             raise StudyError(f"zones.effort: {contradiction}")
         return usage
 
     def __add__(self, other: Usage) -> Usage:
         """Sum of two Usages over the same species and zones: units of the same name are added."""
-        if (self.species, self.zones, self.unit) != (other.species, other.zones, other.unit):
-            raise ValueRuleError("Usages add only over the same species, zones and unit.")
-        if self.measure != other.measure:
-            raise ValueRuleError(f"{self.measure} and {other.measure} do not add.")
-        if self.by_effort != other.by_effort or not same(self.effort, other.effort):
-            raise ValueRuleError("Usages add only with the same effort; give the effort of all logs together to both.")
-        if (self.visits is None) != (other.visits is None):
-            raise ValueRuleError("Usages add only if both or neither count visits.")
-        if not same(self.availability, other.availability):
-            raise ValueRuleError("Usages add only over the same availability.")
+        check_addable(self, other)
         units: list[tuple[str, ...]] = []
         time: list[NDArray[np.number]] = []
         counts: list[NDArray[np.number]] = []
         for s in range(len(self.species)):
-            names = sorted({*self.units[s], *other.units[s]}, key=_natural)
+            names = sorted({*self.units[s], *other.units[s]}, key=natural)
             row = {name: number for number, name in enumerate(names)}
             units.append(tuple(names))
             for gathered, field in ((time, "time"), (counts, "visits")):
@@ -273,9 +269,7 @@ class Usage:
         """
         if not self.by_effort or self.effort is None:
             return self.time
-        looked = self.effort > 0
-        scale = np.where(looked, self.effort, 1.0) / self.effort[looked].mean()
-        return tuple(np.where(looked, amount / scale, 0.0) for amount in self.time)
+        return tuple(divided(amount, self.effort) for amount in self.time)
 
     def zeros(self) -> NDArray[np.object_]:
         """The three kinds of zero: why a species has no use of a zone.
@@ -302,24 +296,7 @@ class Usage:
                 kinds[s, unused & (self.effort == 0)] = "not looked at"
         return kinds
 
-    def _used_unseen(self) -> str | None:
-        """Words on a zone that has use and was not looked at."""
-        if self.effort is None:
-            return None
-        total = np.sum([amount.sum(axis=0) for amount in self.time], axis=0)
-        wrong = np.flatnonzero((self.effort == 0) & (total > 0))
-        if not len(wrong):
-            return None
-        zone = self.zones[int(wrong[0])]
-        return f"zone {zone!r} has use and 0 hours; a zone that was not looked at has no use. Correct its hours."
-
     @property
     def unit_counts(self) -> NDArray[np.int64]:
         """Number of sampling units of each species, shape (S,)."""
         return np.array([len(names) for names in self.units], dtype=np.int64)
-
-
-def _natural(name: str) -> list[tuple[int, str, str]]:
-    """Sorting key under which ``2`` comes before ``10``: of two numbers the one with more digits is the larger."""
-    parts = ((part, part.lstrip("0")) for part in re.split(r"([0-9]+)", name))
-    return [(len(bare), bare, part) if part.isdigit() and part.isascii() else (-1, part, "") for part, bare in parts]

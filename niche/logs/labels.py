@@ -21,7 +21,7 @@ from niche.logs.characters import hidden, holding, look_alikes, peculiar
 from niche.study.model import Study
 from niche.study.names import key, listing, tidy
 
-__all__ = ["Labels", "Names", "alias_line", "key", "listing", "propose", "tidy"]
+__all__ = ["Labels", "Names", "alias_line", "key", "listing", "propose", "tidy", "toml_text"]
 
 _LONGEST = 80
 """A longer label is no slip of a name: nothing close is looked for."""
@@ -135,10 +135,11 @@ def alias_line(text: str, name: str) -> str:
 
     Characters that cannot be seen or told apart stand as their code points, so that the line can be copied.
     """
-    return f"{_toml(text)} = {_toml(name)}"
+    return f"{toml_text(text)} = {toml_text(name)}"
 
 
-def _toml(text: str) -> str:
+def toml_text(text: str) -> str:
+    """Text in quotes as TOML wants it."""
     quoted = json.dumps(text, ensure_ascii=False)
     for character in {*hidden(text), *look_alikes(text)}:
         if character in quoted:

@@ -125,7 +125,7 @@ class Ledger:
                 file,
                 None,
                 "",
-                f"{rows} rows" if rows else "parts of rows",
+                f"{rows} row{'s' * (rows != 1)}" if rows else "parts of rows",
                 "",
                 action.replace("_", " "),
                 action,

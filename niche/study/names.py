@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import unicodedata
+from collections import Counter
 from collections.abc import Iterable
 
 
@@ -19,3 +20,15 @@ def key(text: str) -> str:
 def listing(names: Iterable[str]) -> dict[str, str]:
     """Look-up table from `key` to the name as listed."""
     return {key(name): name for name in names}
+
+
+def named_twice(names: Iterable[str]) -> str | None:
+    """The first name of which another is a mere spelling, or None."""
+    listed = list(names)
+    times = Counter(key(name) for name in listed)
+    return next((name for name in listed if times[key(name)] > 1), None)
+
+
+def badly_spaced(names: Iterable[str]) -> str | None:
+    """The first name with spaces at an end, in a row, or of another kind than the plain one; or None."""
+    return next((name for name in names if name != " ".join(name.split())), None)

@@ -49,6 +49,8 @@ def zones_from_sheet(file: Path, declared: Zones) -> Zones:
             columns=columns,
             layout=tuple(tuple(cells.get((row, column), "") for column in columns) for row in rows),
             availability=Availability(source=source, unit="as in the zone sheet", amounts=amounts) if amounts else None,
+            effort=declared.effort,
+            same_across_sites=declared.same_across_sites,
         )
     except ValidationError as error:
         told = "; ".join(str(problem.get("ctx", {}).get("error", problem["msg"])) for problem in error.errors())

@@ -176,8 +176,8 @@ def _bad_byte(name: str, line: int, data: bytes, at: int, encoding: str) -> LogE
         if _fits(around, codec)
     )
     return LogError(
-        f"{name}: line {line}: byte {data[at]:#04x} is not UTF-8; here it would be {' or '.join(readings)}. Set "
-        '`logs.file.encoding` to "windows-1252" or "latin-1" if that reads right, or save the log as UTF-8.'
+        f"{name}: not UTF-8 (byte {data[at]:#04x} in line {line}; here it would be {' or '.join(readings)}). Save the log "
+        'as UTF-8 CSV, or set `logs.file.encoding` to "windows-1252" or "latin-1" if that reads right.'
     )
 
 

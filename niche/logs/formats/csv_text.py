@@ -13,9 +13,9 @@ from niche.errors import LogError
 from niche.logs.formats import counting
 from niche.logs.formats.byte_source import find_encoding, whole_lines
 from niche.logs.formats.counting import count_records
-from niche.logs.formats.delimiter import SAMPLE_LINES, find_delimiter
+from niche.logs.formats.delimiter import SAMPLE_LINES, SIGNS, find_delimiter
 from niche.logs.formats.heading import Heading, find_heading, rows_needed
-from niche.logs.formats.inspector import Inspector
+from niche.logs.formats.inspector import BLANK, Inspector
 from niche.logs.formats.records import Records
 from niche.logs.formats.wanted import Wanted
 from niche.logs.ledger import Ledger
@@ -30,7 +30,6 @@ _CELLS = {
     True: "a {sign} inside a cell needs quotes round the cell",
 }
 """Remedy for too few cells, and for too many."""
-_SIGNS = {",": "comma", ";": "semicolon", "\t": "tab"}
 
 Row = tuple[int, list[str]]
 
@@ -89,19 +88,22 @@ def read_text(path: Path, wanted: Wanted, piece_rows: int = PIECE_ROWS) -> Itera
 
 def _pieces(records: Records, wanted: Wanted, piece_rows: int) -> Iterator[Piece]:
     top: list[Row] = []
-    inner: dict[int, list[str]] = {}
+    ends: dict[int, int] = {}
     for _ in range(rows_needed(wanted)):
         record = records.next_record()
         if record is None:
             break
         top.append(record[:2])
-        inner[record[0]] = record[2]
+        ends[record[0]] = record[2]
     heading, taken = find_heading(top, wanted)
     inspector, batch = Inspector(wanted, heading, records.delimiter), _Batch(wanted, heading, records.delimiter)
     begun = False
-    for row, cells in top[taken:]:
-        batch.add(row, cells, inner[row])
     limit = max(1, min(piece_rows, PIECE_CELLS // max(1, heading.width)))
+    for row, cells in top[taken:]:
+        batch.add(row, cells, ends[row])
+        if len(batch.rows) >= limit:
+            yield inspector.inspect(*batch.take())
+            begun = True
     while records.more():
         if (block := records.next_columns(heading.width)) is not None:
             if batch.rows:
@@ -133,26 +135,31 @@ class _Batch:
         self.rows: list[int] = []
         self.records: list[list[str]] = []
 
-    def add(self, row: int, cells: list[str], inner: list[str]) -> None:
-        """Take a record; ``inner`` are the lines that lie wholly inside it, between line breaks in its cells."""
+    def add(self, row: int, cells: list[str], end: int) -> None:
+        """Take a record that ends in line ``end``."""
         width, sign = self.heading.width, self.delimiter
-        called = _SIGNS.get(sign, repr(sign))
-        if not cells:
-            cells = [""] * width
-        if len(cells) != width:
-            problem = (
-                f"{len(cells)} cells where the header has {width}; {_CELLS[len(cells) > width].format(sign=called)}"
-            )
+        if len(cells) in (0, width) and not any(map(str.strip, cells)):
+            self.wanted.drop(row, "", *BLANK)
+        elif end > row and self._holds_rows(cells):
+            seen = f"a quoted cell runs on to line {end} and holds what look like whole rows"
+            problem = f"{seen}; is the quote at its end missing?"
+            self.wanted.drop(row, sign.join(cells), "quote left open", problem, "stop")
+        elif len(cells) != width:
+            advice = _CELLS[len(cells) > width].format(sign=SIGNS.get(sign, repr(sign)))
+            problem = f"{len(cells)} cells where the header has {width}; {advice}"
             self.wanted.drop(row, sign.join(cells), "wrong number of cells", problem, "stop")
-        elif width > 1 and any(line.count(sign) >= width - 1 for line in inner):
-            problem = (
-                f"a cell holds {len(inner)} or more whole lines of the file: a quote is missing or too many in lines "
-                f"{row} to {row + len(inner) + 1}"
-            )
-            self.wanted.drop(row, sign.join(cells), "rows inside a cell", problem, "stop")
         else:
             self.rows.append(row)
             self.records.append(cells)
+
+    def _holds_rows(self, cells: list[str]) -> bool:
+        """Whether a cell with line breaks has as many delimiters a break as a row has: rows swallowed by an open quote.
+
+        Such a record can have the right number of cells, so that nothing else would tell of the rows inside it.
+        """
+        width, sign = self.heading.width, self.delimiter
+        breaks = ((cell, max(cell.count("\n"), cell.count("\r"))) for cell in cells)
+        return width > 2 and any(times and cell.count(sign) >= times * (width - 1) for cell, times in breaks)
 
     def take(self) -> tuple[np.ndarray[tuple[int], np.dtype[np.int64]], list[pa.Array]]:
         """What was gathered, as row numbers and columns; the batch is empty afterwards."""

@@ -18,9 +18,13 @@ from niche.logs.formats.heading import Heading, tidy_heading
 from niche.logs.formats.numbers import Numbers
 from niche.logs.formats.wanted import Wanted
 from niche.logs.labels import Labels, key
+from niche.logs.ledger import Action
 from niche.logs.pieces import Piece
 
 Mask = NDArray[np.bool_]
+
+BLANK: tuple[str, str, Action] = ("blank row", "no cell is filled", "set_aside")
+"""Reason, problem and action for a row without a filled cell."""
 
 _LABELS = ("species", "animal", "session", "zone", "tag", "antenna", "deployment", "site", "observer", "date")
 _SUMMED = ("species", "animal", "session", "zone", "tag", "date")
@@ -53,7 +57,7 @@ class Inspector:
         """One piece of the file as a `Piece`, cleared of rows that no rule should see."""
         dropped = self._blank(columns)
         for row in rows[dropped].tolist():
-            self.wanted.drop(row, "", "blank row", "no cell is filled", "set_aside")
+            self.wanted.drop(row, "", *BLANK)
         rows, columns = _without(rows, columns, dropped)
         dropped = self._repeated_header(columns)
         for row in rows[dropped].tolist():

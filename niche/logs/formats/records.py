@@ -54,8 +54,8 @@ class Records:
         cell = rb'(?>"[^"]*+(?:""[^"]*+)*+"|[^"%b]*+)' % re.escape(delimiter.encode())
         self._closed = re.compile(rb"%b(?:%b%b)*+" % (cell, re.escape(delimiter.encode()), cell))
 
-    def next_record(self) -> tuple[int, list[str], list[str]] | None:
-        """Next record as (its first line, its cells, the lines inside it); None at the foot.
+    def next_record(self) -> tuple[int, list[str], int] | None:
+        """Next record as (its first line, its cells, its last line); None at the foot.
 
         Raises
         ------
@@ -63,19 +63,18 @@ class Records:
             The record breaks the quoting rules.
         """
         first = self._line + 1
-        self._inner: list[str] = []
         try:
             record = next(self._reader, None)
         except csv.Error as error:
-            where = f"line {first}" if self._line <= first else f"line {first} to line {self._line}"
+            seen = f" (seen at line {self._line}, in the row that begins here)" if self._line > first else ""
             raise LogError(
-                f"{self.name}: {where}: {error}. A quoted cell must end with a quote before the next "
+                f"{self.name}: line {first}: {error}{seen}. A quoted cell must end with a quote before the next "
                 "comma or line end; two quotes in a row stand for one."
             ) from None
         if record is None:
             return None
         self.count += 1
-        return first, record, self._inner[1:-1]
+        return first, record, self._line
 
     def next_columns(self, width: int) -> tuple[int, list[Any]] | None:
         """All rows left in the chunk as (line of the first, columns of text), or None if they need care, or at the foot."""
@@ -131,5 +130,4 @@ class Records:
             line = self._chunk[self._at : end].decode()
             self._at = end
             self._line += 1
-            self._inner.append(line)
             yield line

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field
 from datetime import date, datetime, time, timedelta
-from itertools import islice
+from itertools import chain, islice
 from typing import Any
 
 import numpy as np
@@ -105,9 +105,7 @@ def sheet_pieces(
     inspector = Inspector(wanted, heading)
     limit = max(1, min(piece_rows, PIECE_CELLS // heading.width))
     begun = False
-    for row in top[taken:]:
-        sheet.add(row)
-    for row in counted:
+    for row in chain(top[taken:], counted):
         sheet.add(row)
         if len(sheet.rows) >= limit:
             yield inspector.inspect(*sheet.take())

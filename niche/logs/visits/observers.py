@@ -9,6 +9,7 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
+from niche.logs.labels import toml_text
 from niche.logs.ledger import Ledger
 from niche.logs.visits.table import listed, move
 from niche.study.names import key
@@ -124,7 +125,7 @@ class _Watch:
                 "logs.observer says whose rows count" if by_choice else "the one who began first with the animal counts"
             )
             problem = (
-                f"{row.observer} and {first.observer} logged {row.animal} at the same time ({first.file}, row "
+                f"{row.observer!r} and {first.observer!r} logged {row.animal!r} at the same time ({first.file}, row "
                 f"{first.row}), and {why}; kept apart"
             )
             move(ledger, row, SECOND, problem, "set_aside")
@@ -144,9 +145,9 @@ class _Watch:
                 position, other = int(np.flatnonzero(mine)[met >= 0][0]), int(met[met >= 0][0])
                 row, earlier = rows[position], rows[other]
                 problem = (
-                    f"{names[first]} and {names[second]} both logged {row.animal} at this time ({earlier.file}, row "
-                    f"{earlier.row}), with {_rows(int((met >= 0).sum()))} of {names[second]} in all; say whose rows count, "
-                    f'as in `logs.observer = "{names[first]}"`; the other’s are then set aside, not lost'
+                    f"{names[first]!r} and {names[second]!r} both logged {row.animal!r} at this time ({earlier.file}, row "
+                    f"{earlier.row}), with {_rows(int((met >= 0).sum()))} of {names[second]!r} in all; say whose rows "
+                    f"count, as in `logs.observer = {toml_text(names[first])}`; the other’s are then set aside, not lost"
                 )
                 move(ledger, row, REASON, problem, "stop")
                 self.out[position] = True

@@ -78,7 +78,7 @@ def without_overlaps(
     for position in np.flatnonzero(clash).tolist():
         row, holder = rows[position], rows[other[position]]
         problem = (
-            f"{row.animal} is already in {_zone(holder)} until {clock(holder.end)} ({holder.file}, row {holder.row}); "
+            f"{row.animal!r} is already in {_zone(holder)} until {clock(holder.end)} ({holder.file}, row {holder.row}); "
             'correct one of the two times, or set `logs.problems.overlap` to "set_aside", "trim_earlier" or "split"'
         )
         move(ledger, row, REASON, problem, "set_aside" if policy == "set_aside" else "stop")
@@ -119,7 +119,7 @@ def _trimmed(visits: pd.DataFrame, found: pd.DataFrame, ledger: Ledger) -> pd.Da
     for position in np.flatnonzero(level).tolist():
         row, other = rows[position], rows[position - 1]
         problem = (
-            f"starts at the same moment as another bout of {row.animal} in {_zone(other)} ({other.file}, row "
+            f"starts at the same moment as another bout of {row.animal!r} in {_zone(other)} ({other.file}, row "
             f"{other.row}), so neither is the earlier one to trim; correct one of the two, or set `logs.problems.overlap` "
             'to "set_aside" or "split"'
         )
@@ -132,7 +132,7 @@ def _trimmed(visits: pd.DataFrame, found: pd.DataFrame, ledger: Ledger) -> pd.Da
     for position in np.flatnonzero(until < end).tolist():
         row, after, cut = rows[position], rows[position + 1], int(until[position])
         problem = (
-            f"ended at {clock(cut)}, where {row.animal} is in {_zone(after)} ({after.file}, row {after.row}); "
+            f"ended at {clock(cut)}, where {row.animal!r} is in {_zone(after)} ({after.file}, row {after.row}); "
             f"{seconds(row.end - cut)} s set aside"
         )
         trim(ledger, row, TRIMMED, problem, int(row.end) - cut)
@@ -160,11 +160,13 @@ def _split(visits: pd.DataFrame, found: pd.DataFrame, ledger: Ledger) -> pd.Data
         row = rows[number]
         lost = int(row.end - row.start) - sum(b - a for a, b in spans)
         if not spans:
-            problem = f"its time is shared with two or more other bouts of {row.animal}, and no part of it is left"
+            problem = f"its time is shared with two or more other bouts of {row.animal!r}, and no part of it is left"
             move(ledger, row, REASON, problem, "set_aside")
         elif lost:
             shown = " and ".join(f"{clock(a)} to {clock(b)}" for a, b in spans[:3]) + (" and more" if spans[3:] else "")
-            problem = f"shares time with another bout of {row.animal}; counts from {shown}; {seconds(lost)} s set aside"
+            problem = (
+                f"shares time with another bout of {row.animal!r}; counts from {shown}; {seconds(lost)} s set aside"
+            )
             trim(ledger, row, SHARED, problem, lost)
     new = visits.loc[found.index[[which for which, _, _ in parts]]].copy()
     new["start"] = np.array([a for _, a, _ in parts], dtype=np.int64)

@@ -100,5 +100,5 @@ def _problem(animal: str, sites: list[str], when: str) -> str:
 
 
 def _few(names: pd.Series[str]) -> str:
-    shown = ", ".join(names.tolist()[:_SHOWN])
+    shown = ", ".join(repr(name) for name in names.tolist()[:_SHOWN])
     return shown + (f" and {len(names) - _SHOWN} more" if len(names) > _SHOWN else "")

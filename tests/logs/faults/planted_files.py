@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import io
-from datetime import datetime
+from datetime import datetime, timedelta
 
 from fault_register import DURATIONS, HEADER, SOUND, Found, Planted, lengths
 
@@ -19,10 +19,10 @@ def workbook() -> bytes:
     sheet = book.active
     sheet.title = "bouts"
     sheet.append(["species", "animal", "session", "zone", "start", "end"])
+    day = datetime(2026, 9, 3)  # noqa: DTZ001 - cells of a workbook have no time zone
     for hour in (8, 9, 10):
-        sheet.append(
-            ["dunlin", "RW", "s1", "upper mud", datetime(2026, 9, 3, hour), datetime(2026, 9, 3, hour, 10, 30)]
-        )  # noqa: DTZ001
+        start = day + timedelta(hours=hour)
+        sheet.append(["dunlin", "RW", "s1", "upper mud", start, start + timedelta(seconds=630)])
     sheet["A2"].fill = PatternFill("solid", fgColor="FFFF00")
     sheet.row_dimensions[3].hidden = True
     book.create_sheet("notes").append(["rain at noon"])

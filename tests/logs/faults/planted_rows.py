@@ -92,7 +92,11 @@ PLANTED = [
                 3,
                 "start",
                 "stop",
-                ("RW is already in 'upper mud' until 2026-09-03T08:10:30Z", "a.csv, row 2", "`logs.problems.overlap`"),
+                (
+                    "'RW' is already in 'upper mud' until 2026-09-03T08:10:30Z",
+                    "a.csv, row 2",
+                    "`logs.problems.overlap`",
+                ),
             ),
         ),
         rows={"used": 1, "stop": 1},
@@ -123,7 +127,7 @@ PLANTED = [
         "asks whose rows count",
         "logs.observer, logs.problems.two_observers",
         OBSERVED + row("08:00", "08:10", "HB") + row("08:02", "08:09", "LK", zone="upper sand"),
-        found=(Found(3, "start", "stop", ("HB and LK both logged RW", '`logs.observer = "HB"`')),),
+        found=(Found(3, "start", "stop", ("'HB' and 'LK' both logged 'RW'", '`logs.observer = "HB"`')),),
         rows={"used": 1, "stop": 1},
         study={"columns": BOUTS + '\nobserver = "observer"'},
         answer={"keys": 'observer = "LK"'},
@@ -183,7 +187,9 @@ PLANTED = [
         "zones.same_across_sites",
         SITED + row("08:00", "08:10", "north") + row("09:00", "09:10", "south", animal="GY"),
         found=(
-            Found(3, "start", "stop", ("'upper mud' stands at the sites north, south", "`zones.same_across_sites`")),
+            Found(
+                3, "start", "stop", ("'upper mud' stands at the sites 'north', 'south'", "`zones.same_across_sites`")
+            ),
         ),
         rows={"used": 1, "stop": 1},
         study={"columns": BOUTS + '\nsite = "site"'},
@@ -200,7 +206,7 @@ PLANTED = [
         + row("08:20", "08:40", "south")
         + row("10:00", "10:10", "north", animal="UNK"),
         found=(
-            Found(3, "start", "stop", ("'RW' stands at the sites north, south", "`logs.problems.reused_animals`")),
+            Found(3, "start", "stop", ("'RW' stands at the sites 'north', 'south'", "`logs.problems.reused_animals`")),
             Found(4, "animal", "stop", ("names no animal", "`logs.problems.nameless_animals`")),
         ),
         rows={"used": 1, "stop": 2},

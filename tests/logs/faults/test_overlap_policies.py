@@ -26,7 +26,7 @@ def test_the_work_stops_by_default_and_the_message_offers_every_policy(flat):
     log = flat.read([flat.bout("08:00", "08:00:50"), flat.bout("08:00:20", "08:01:10", zone="upper sand")])
     assert flat.told(log) == [("a.csv", 3, "start", "overlaps another bout of the same animal", "stop")]
     problem = flat.problem(log, 3)
-    assert "RW is already in 'upper mud' until 2026-09-03T08:00:50Z (a.csv, row 2)" in problem
+    assert "'RW' is already in 'upper mud' until 2026-09-03T08:00:50Z (a.csv, row 2)" in problem
     assert all(f'"{policy}"' in problem for policy in POLICIES[1:])
 
 

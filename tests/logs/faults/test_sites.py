@@ -22,8 +22,8 @@ def test_a_zone_label_at_two_sites_is_asked_about_once(flat):
     log = flat.read(rows, header=HEADER, columns=COLUMNS)
     assert flat.told(log) == [("a.csv", 3, "start", "one zone label at several sites", "stop")]
     problem = flat.problem(log, 3)
-    assert "'upper mud' stands at the sites north, south" in problem
-    assert "upper mud, lower mud" in problem
+    assert "'upper mud' stands at the sites 'north', 'south'" in problem
+    assert "'upper mud', 'lower mud'" in problem
     assert "`zones.same_across_sites` to true" in problem
     log = flat.read(rows, header=HEADER, columns=COLUMNS, zones="same_across_sites = true")
     assert flat.told(log) == []
@@ -69,7 +69,7 @@ def test_an_animal_at_two_sites_over_the_same_days_stops_the_work_once(flat):
     log = flat.read(reused(flat), **KEYS)
     assert flat.told(log) == [("a.csv", 3, "start", "one animal name at several sites", "stop")]
     problem = flat.problem(log, 3)
-    assert "'RW' stands at the sites north, south over the same days" in problem
+    assert "'RW' stands at the sites 'north', 'south' over the same days" in problem
     assert '`logs.problems.reused_animals` to "keep_apart_by_site"' in problem
     assert '"same_animal"' in problem
 

@@ -22,15 +22,15 @@ def test_the_work_stops_once_with_both_names_and_the_key(flat):
     log = flat.read(lines(flat), header=HEADER, columns=COLUMNS)
     assert flat.told(log) == [("a.csv", 4, "start", "two observers", "stop")]
     problem = flat.problem(log, 4)
-    assert "HB and LK both logged RW at this time (a.csv, row 2)" in problem
-    assert "2 rows of LK" in problem
+    assert "'HB' and 'LK' both logged 'RW' at this time (a.csv, row 2)" in problem
+    assert "2 rows of 'LK'" in problem
     assert '`logs.observer = "HB"`' in problem
 
 
 def test_the_chosen_observers_rows_count_and_the_others_are_kept_apart(flat):
     log = flat.read(lines(flat), header=HEADER, columns=COLUMNS, logs='observer = "hb"')
     assert flat.told(log) == [("a.csv", row, "start", "second observer", "set_aside") for row in (4, 5)]
-    assert "LK and HB logged RW at the same time" in flat.problem(log, 4)
+    assert "'LK' and 'HB' logged 'RW' at the same time" in flat.problem(log, 4)
     assert "(a.csv, row 3)" in flat.problem(log, 5)
     assert flat.spans(log) == [("upper mud", 0, 600), ("lower mud", 600, 1200), ("upper mud", 3600, 4200)]
     log.require_usable()

@@ -44,7 +44,7 @@ def test_an_undeclared_byte_is_shown_with_its_line_and_what_it_could_be(flat, co
     with pytest.raises(LogError) as caught:
         flat.pieces("a.csv", content.encode("cp1252"))
     message = str(caught.value)
-    assert message.startswith("a.csv: line 2: byte 0xf6 is not UTF-8; here it would be 'dunlin,Größe,mid")
+    assert message.startswith("a.csv: not UTF-8 (byte 0xf6 in line 2; here it would be 'dunlin,Größe,mid")
     assert "in Windows-1252" in message
     assert "`logs.file.encoding`" in message
 
@@ -52,7 +52,7 @@ def test_an_undeclared_byte_is_shown_with_its_line_and_what_it_could_be(flat, co
 def test_the_line_of_a_bad_byte_is_found_far_down(flat):
     rows = [ROWS[0]] + [["dunlin", "RW", "middle mud", "t", "5"]] * 500
     content = flat.text(rows).encode() + b"dunlin,R\x84,middle mud,t,5\n"
-    with pytest.raises(LogError, match=r"a.csv: line 502: byte 0x84"):
+    with pytest.raises(LogError, match=r"a.csv: not UTF-8 \(byte 0x84 in line 502;"):
         flat.pieces("a.csv", content)
 
 

@@ -80,29 +80,37 @@ def test_line_breaks_in_quoted_cells_keep_the_count_of_lines(flat):
     assert taken.column("notes") == ["one\ntwo\r\nthree", "plain"]
 
 
-def test_rows_swallowed_by_a_stray_quote_stop(flat):
+@pytest.mark.parametrize("sign", [",", ";"])
+@pytest.mark.parametrize("last", [3, 5])
+def test_rows_swallowed_by_a_stray_quote_stop(flat, sign, last):
     rows = [[*flat.header, "notes"], *([[*flat.bout(animal=f"A{i}"), ""] for i in range(6)])]
-    lines = flat.text(rows).splitlines()
+    lines = flat.text(rows, sign).splitlines()
     lines[2] += '"ran'
-    lines[5] += 'stood"'
+    lines[last] += 'stood"'
     taken = flat.pieces("a.csv", "\n".join(lines) + "\n")
-    assert taken.rows == [2, 7]
-    ((row, _, _, reason, action),) = taken.found
-    assert (row, reason, action) == (3, "rows inside a cell", "stop")
-    assert "lines 3 to 6" in taken.problem(3)
+    assert taken.rows == [row for row in range(2, 8) if row < 3 or row > last + 1]
+    assert [(row, reason, action) for row, _, _, reason, action in taken.found if row] == [
+        (3, "quote left open", "stop")
+    ]
+    assert f"runs on to line {last + 1}" in taken.problem(3)
 
 
 @pytest.mark.parametrize(
     ("lines", "where"),
     [
-        (['dunlin,RW,"upper sand,t,5'], "line 2 to line 3"),
+        (['dunlin,RW,"upper sand,t,5'], "line 2: .*seen at line 3"),
         (['dunlin,RW,"upper" sand,t,5'], "line 2"),
-        (['dunlin,"RW,x', 'y" z,u,t,5'], "line 2 to line 3"),
+        (['dunlin,"RW,x', 'y" z,u,t,5'], "line 2: .*seen at line 3"),
     ],
 )
 def test_quotes_that_do_not_close_are_an_error_with_their_lines(flat, lines, where):
-    content = flat.text([flat.header]) + "\n".join(lines) + "\n" + (flat.text([flat.bout()]) if "3" in where else "")
-    with pytest.raises(LogError, match=rf"a.csv: {where}: .*two quotes in a row"):
+    content = (
+        flat.text([flat.header])
+        + "\n".join(lines)
+        + "\n"
+        + (flat.text([flat.bout()]) if "upper sand" in lines[0] else "")
+    )
+    with pytest.raises(LogError, match=rf"a.csv: {where}.*two quotes in a row"):
         flat.pieces("a.csv", content)
 
 
@@ -207,3 +215,10 @@ def test_a_wide_file_gives_short_pieces(flat, monkeypatch):
     monkeypatch.setattr(csv_text, "PIECE_CELLS", 50)
     content = flat.text([flat.header] + [flat.bout(animal='"a\nb"')] * 25)
     assert max(flat.pieces("a.csv", content).sizes) <= 25
+
+
+@pytest.mark.parametrize("size", [1, 2, 7])
+def test_no_piece_of_a_short_file_is_longer_than_allowed(flat, size):
+    taken = flat.pieces("a.csv", flat.text([flat.header, *[flat.bout()] * 7]), piece_rows=size)
+    assert max(taken.sizes) == size
+    assert taken.rows == list(range(2, 9))

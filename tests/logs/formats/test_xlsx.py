@@ -262,6 +262,13 @@ def test_pandas_reads_the_same_cells(book, flat):
     assert pd.to_datetime(taken.column("start")).tolist() == frame["start"].tolist()
 
 
+@pytest.mark.parametrize("size", [1, 2, 3])
+def test_no_piece_is_longer_than_allowed(book, size):
+    taken = book(*[row()] * 5, piece_rows=size)
+    assert max(taken.sizes) == size
+    assert taken.rows == [2, 3, 4, 5, 6]
+
+
 def test_a_bomb_is_refused_with_its_size(book, flat, monkeypatch):
     book(row())
     monkeypatch.setattr(zip_guard, "EXPANSION_FREE", 1_000_000)
