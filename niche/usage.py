@@ -8,7 +8,7 @@ from __future__ import annotations
 import re
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
-from typing import TYPE_CHECKING, Literal
+from typing import TYPE_CHECKING, Literal, cast
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -91,6 +91,11 @@ class Usage:
             raise ValueRuleError(f"zones are {list(names)}; each zone has a name of its own.")
         if not use:
             raise ValueRuleError("use names no species; give at least one.")
+        if unit not in ("animal", "session"):
+            raise ValueRuleError(f"unit is {unit!r}; it must be 'animal' or 'session'.")
+        strangers = [species for species in visits or {} if species not in use]
+        if strangers:
+            raise ValueRuleError(f"visits names {strangers[0]!r}, which use does not.")
         time, counts, labels = [], [], []
         for species, given in use.items():
             amounts = _checked(given, species, "use", len(names))
@@ -107,7 +112,8 @@ class Usage:
                 counts.append(count)
         shares = None
         if availability is not None:
-            shares = _shares(_checked(np.asarray(availability)[None], "availability", "availability", len(names))[0])
+            row = cast("ArrayLike", [availability])  # as the one row of a table
+            shares = _shares(_checked(row, "all zones", "availability", len(names))[0])
         return cls(
             tuple(use), names, tuple(labels), tuple(time), tuple(counts) if visits is not None else None, unit, shares
         )
@@ -161,6 +167,8 @@ class Usage:
             raise ValueRuleError("Usages add only over the same species, zones and unit.")
         if (self.visits is None) != (other.visits is None):
             raise ValueRuleError("Usages add only if both or neither count visits.")
+        if not np.array_equal(_or_none(self.availability), _or_none(other.availability)):
+            raise ValueRuleError("Usages add only over the same availability.")
         units: list[tuple[str, ...]] = []
         time: list[NDArray[np.number]] = []
         counts: list[NDArray[np.number]] = []
@@ -205,9 +213,10 @@ class Usage:
         return np.array([len(names) for names in self.units], dtype=np.int64)
 
 
-def _natural(name: str) -> list[tuple[int, str]]:
-    """Sorting key under which ``2`` comes before ``10``."""
-    return [(int(part), part) if part.isascii() and part.isdigit() else (-1, part) for part in re.split(r"(\d+)", name)]
+def _natural(name: str) -> list[tuple[int, str, str]]:
+    """Sorting key under which ``2`` comes before ``10``: of two numbers the one with more digits is the larger."""
+    parts = ((part, part.lstrip("0")) for part in re.split(r"([0-9]+)", name))
+    return [(len(bare), bare, part) if part.isdigit() and part.isascii() else (-1, part, "") for part, bare in parts]
 
 
 def study_availability(study: Study) -> NDArray[np.float64] | None:
@@ -218,15 +227,24 @@ def study_availability(study: Study) -> NDArray[np.float64] | None:
     return _shares(np.array([given.amounts[zone] for zone in study.zones.names]))
 
 
+def _or_none(shares: NDArray[np.float64] | None) -> NDArray[np.float64]:
+    """Shares, none as an empty array, so that two can be compared."""
+    return np.empty(0) if shares is None else shares
+
+
 def _shares(amounts: NDArray[np.float64]) -> NDArray[np.float64]:
-    if amounts.sum() <= 0:
+    if amounts.max(initial=0) <= 0:
         raise ValueRuleError("availability adds up to 0; at least one zone must be available.")
+    amounts = amounts / amounts.max()  # or the sum of very large amounts is infinite
     return np.asarray(amounts / amounts.sum())
 
 
 def _checked(given: ArrayLike, species: str, what: str, zones: int) -> NDArray[np.float64]:
     """Amounts as a (units, zones) array of finite numbers at least 0."""
-    amounts = np.array(given, dtype=np.float64)
+    try:
+        amounts = np.array(given, dtype=np.float64)
+    except (TypeError, ValueError) as error:
+        raise ValueRuleError(f"{what} of {species!r} is no table of numbers: {error}.") from None
     if amounts.ndim != 2 or amounts.shape[1] != zones:
         raise ValueRuleError(f"{what} of {species!r} has shape {amounts.shape}; it must be (units, {zones}).")
     if not np.isfinite(amounts).all() or (amounts < 0).any():

@@ -18,9 +18,9 @@ import pyarrow.compute as pc
 from numpy.typing import NDArray
 
 _ISO = (
-    r"^\s*(?P<year>\d{4})-(?P<month>\d{2})-(?P<day>\d{2})[T ](?P<hour>\d{2}):(?P<minute>\d{2})"
+    r"^(?P<year>\d{4})-(?P<month>\d{2})-(?P<day>\d{2})[T ](?P<hour>\d{2}):(?P<minute>\d{2})"
     r"(?::(?P<second>\d{2})(?:[.,](?P<fraction>\d{1,3})\d*)?)?"
-    r"(?P<offset>Z|[+-]\d{2}(?::?\d{2})?)?\s*$"
+    r"(?P<offset>Z|[+-]\d{2}(?::?\d{2})?)?$"
 )
 _EXAMPLE = "write it like 2026-09-03T08:15:30+02:00"
 
@@ -34,6 +34,8 @@ REPEATED_HOUR = "this local time came twice: clocks were put back over it; write
 END_OF_DAY = "24:00 read as 00:00 of the next day"
 
 DAY = 86_400_000
+_NO_OFFSET = 100 * 60
+"""Minutes of an offset that no place can have."""
 
 
 @dataclass(frozen=True)
@@ -63,7 +65,7 @@ def read_times(text: Any, time_zone: str | None, has_offset: bool | None = None)
     -------
     Instants
     """
-    found = pc.extract_regex(text, _ISO)
+    found = pc.extract_regex(pc.utf8_trim_whitespace(text), _ISO)
     fits = np.asarray(pc.is_valid(found))
     year, month, day, hour, minute, second = (
         _integers(found, name) for name in ("year", "month", "day", "hour", "minute", "second")
@@ -75,6 +77,7 @@ def read_times(text: Any, time_zone: str | None, has_offset: bool | None = None)
     end_of_day = (hour == 24) & (minute == 0) & (second == 0) & (milli == 0)
     real = same_month & (day >= 1) & (month >= 1) & (month <= 12) & (minute <= 59) & (second <= 59)
     real &= (hour <= 23) | end_of_day
+    real &= (year >= 1) & (year <= 9998)  # as far as the local calendar of any zone can be reckoned
     ms = days.astype(np.int64) * DAY + ((hour * 60 + minute) * 60 + second) * 1000 + milli
 
     offset, written = _offsets(found)
@@ -94,7 +97,7 @@ def read_times(text: Any, time_zone: str | None, has_offset: bool | None = None)
     problem[fits & ~real] = IMPOSSIBLE
     problem[~fits] = UNREADABLE
     repair = np.full(len(ms), None, dtype=object)
-    repair[fits & end_of_day] = END_OF_DAY
+    repair[fits & real & end_of_day] = END_OF_DAY
     return Instants(ms - offset * 60_000, problem, repair, has_offset)
 
 
@@ -112,6 +115,7 @@ def _offsets(found: Any) -> tuple[NDArray[np.int64], NDArray[np.bool_]]:
     for text in coded.dictionary.to_pylist():
         digits = text[1:].replace(":", "").ljust(4, "0")
         size = int(digits[:2]) * 60 + int(digits[2:]) if text not in ("", "Z") else 0
+        size = size if int(digits[2:]) <= 59 else _NO_OFFSET
         minutes.append(-size if text.startswith("-") else size)
     index = np.asarray(coded.indices)
     names = np.array(coded.dictionary.to_pylist(), dtype=object)

@@ -73,9 +73,7 @@ def log_paths(study: Study) -> list[Path]:
     """
     found: dict[Path, None] = {}
     for number, pattern in enumerate(study.logs.files, 1):
-        relative = not Path(pattern).is_absolute()
-        matched = sorted(study.folder.glob(pattern)) if relative else [Path(pattern)]
-        matched = [path for path in matched if path.is_file()]
+        matched = _matching(study.folder, pattern)
         if not matched:
             raise StudyError(
                 f"logs.files[{number}]: {pattern!r} names no file in {study.folder.resolve()}. Paths are relative to the "
@@ -83,6 +81,20 @@ def log_paths(study: Study) -> list[Path]:
             )
         found.update(dict.fromkeys(matched))
     return list(found)
+
+
+def _matching(folder: Path, pattern: str) -> list[Path]:
+    """Files that a pattern names: the file of just that name, else all that fit."""
+    try:
+        if (folder / pattern).is_file():
+            return [folder / pattern]
+        absolute = Path(pattern).is_absolute()
+        root = Path(Path(pattern).anchor) if absolute else folder
+        below = Path(pattern).relative_to(root) if absolute else Path(pattern)
+        found = root.glob(str(below)) if below.parts else ()  # "." and "/" are folders, and no pattern
+        return sorted(path for path in found if path.is_file())
+    except (OSError, ValueError):  # a name too long, or a pattern that is none, such as "**x"
+        return []
 
 
 def read_logs(study: Study, progress: Progress | None = None) -> Log:

@@ -7,7 +7,6 @@ That repair is safe and is noted. A name that is merely close is proposed in the
 from __future__ import annotations
 
 import difflib
-import unicodedata
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
 from typing import Any
@@ -16,15 +15,9 @@ import numpy as np
 import pyarrow.compute as pc
 from numpy.typing import NDArray
 
+from niche.study.names import key, tidy
 
-def tidy(text: str) -> str:
-    """Compatibility form, trimmed, single spaces; letters keep their case."""
-    return " ".join(unicodedata.normalize("NFKC", text).split())
-
-
-def key(text: str) -> str:
-    """What two spellings of one name share."""
-    return tidy(text).casefold()
+__all__ = ["Labels", "key", "listing", "propose", "tidy"]
 
 
 @dataclass(frozen=True)

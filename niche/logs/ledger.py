@@ -121,7 +121,7 @@ class Ledger:
         import pandas as pd
 
         counted = [
-            Entry(file, None, "", f"{rows} rows", "", action.replace("_", " "), action, milliseconds)
+            Entry(file, None, "", f"{rows} row{'s' * (rows != 1)}", "", action.replace("_", " "), action, milliseconds)
             for (file, action), (rows, milliseconds) in self.by_file.items()
             if rows
         ]

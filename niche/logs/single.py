@@ -22,9 +22,11 @@ def open_study(path: Path) -> Study:
     ------
     StudyError, LogError
     """
-    if path.is_dir() or path.suffix.lower() == ".toml" or not path.exists():
-        return read_study(path)
-    return study_of_log(path)
+    try:
+        alone = path.exists() and not path.is_dir() and path.suffix.lower() != ".toml"
+    except (OSError, ValueError):  # no path can be like that; the reading of a study says so
+        alone = False
+    return study_of_log(path) if alone else read_study(path)
 
 
 def study_of_log(path: Path) -> Study:

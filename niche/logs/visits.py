@@ -53,7 +53,7 @@ def without_overlaps(visits: pd.DataFrame, ledger: Ledger, action: Action) -> pd
     for position in np.flatnonzero(clash):
         row, other = ordered.iloc[position], ordered.iloc[holder[position - 1]]
         problem = (
-            f"{row.animal} is already in {other.zone or 'out of sight'!r} until {_clock(other.end)} "
+            f"{row.animal!r} is already in {other.zone or 'out of sight'!r} until {_clock(other.end)} "
             f"({other.file}, row {other.row}); correct one of the two times, or set "
             '`logs.problems.overlap` to "set_aside"'
         )

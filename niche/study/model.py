@@ -7,16 +7,20 @@ with the key's path, what was found and what is allowed. `docs/study_file.md` de
 from __future__ import annotations
 
 import math
-from collections import Counter
 from pathlib import Path
 from typing import Annotated, Literal, Self
 from zoneinfo import ZoneInfo
 
 from pydantic import BaseModel, ConfigDict, Field, field_validator, model_validator
 
-Positive = Annotated[float, Field(gt=0, allow_inf_nan=False)]
+from niche.study.names import badly_spaced, key, named_twice
+
+Positive = Annotated[float, Field(gt=0, lt=1e100, allow_inf_nan=False)]
 Text = Annotated[str, Field(min_length=1)]
 Policy = Literal["stop", "set_aside"]
+
+UNPORTABLE_ZONES = ("right/", "posix/", "localtime", "posixrules")
+"""Names that some machines know as time zones, others do not or take for another; `right/` counts leap seconds."""
 
 STANDARD_COLUMNS = ("species", "animal", "session", "zone", "start", "end", "duration")
 
@@ -31,17 +35,30 @@ class Columns(Section):
     """Heading in the log of each thing the program needs; a bout has an ``end`` or a ``duration``."""
 
     species: Text = "species"
-    animal: Text | None = "animal"
+    animal: str | None = "animal"
     session: Text | None = None
     zone: Text = "zone"
     start: Text = "start"
     end: Text | None = None
     duration: Text | None = None
 
+    @field_validator("animal")
+    @classmethod
+    def _empty_for_none(cls, heading: str | None) -> str | None:
+        """A study file has no word for None, so empty text stands for a log that does not tell animals apart."""
+        return heading or None
+
     @model_validator(mode="after")
     def _one_way_to_end(self) -> Self:
         if (self.end is None) == (self.duration is None):
             raise ValueError("a bout ends by its `end` or its `duration` column: name one of the two")
+        if self.animal is None and self.session is None:
+            raise ValueError(
+                "`animal` is empty and there is no `session`; one of them must be named, as the sampling unit"
+            )
+        headings = [heading for heading in self.model_dump().values() if heading is not None]
+        if (twice := named_twice(headings)) is not None:
+            raise ValueError(f"the heading {twice!r} is named for two things; each has a column of its own")
         return self
 
 
@@ -71,9 +88,13 @@ class Logs(Section):
     def _known_time_zone(cls, name: str | None) -> str | None:
         if name is not None:
             try:
-                ZoneInfo(name)
-            except (KeyError, ValueError, OSError) as error:
-                raise ValueError("no such time zone; give an IANA name such as Europe/Berlin or Etc/GMT-1") from error
+                known = not name.startswith(UNPORTABLE_ZONES) and ZoneInfo(name) is not None
+            except (KeyError, ValueError, OSError):
+                known = False
+            if not known:
+                raise ValueError(
+                    f"found {name!r}, and there is no such time zone; give an IANA name such as Europe/Berlin or Etc/GMT-1"
+                )
         return name
 
 
@@ -128,12 +149,10 @@ def check_layout(rows: tuple[str, ...], columns: tuple[str, ...], layout: tuple[
     names = [zone for row in layout for zone in row if zone]
     if not names:
         raise ValueError("the layout names no zone")
-    for zone in names:
-        if zone != " ".join(zone.split()):
-            raise ValueError(f"zone {zone!r} has spaces at an end or in a row; write single spaces")
-    twice = [zone for zone, times in Counter(zone.casefold() for zone in names).items() if times > 1]
-    if twice:
-        raise ValueError(f"zone {twice[0]!r} is named twice; each zone has one place and one name")
+    if (spaced := badly_spaced(names)) is not None:
+        raise ValueError(f"zone {spaced!r} has spaces at an end or in a row, or not plain ones; write single spaces")
+    if (twice := named_twice(names)) is not None:
+        raise ValueError(f"zone {twice!r} is named twice, spelling aside; each zone has one place and one name")
 
 
 def check_amounts(zones: tuple[str, ...], amounts: dict[str, float]) -> None:
@@ -182,7 +201,7 @@ class Settings(Section):
 
     resamples: Annotated[int, Field(ge=100, le=1_000_000)] = 9999
     confidence: Annotated[float, Field(gt=0.5, lt=1)] = 0.95
-    seed: Annotated[int, Field(ge=0)] = 1
+    seed: Annotated[int, Field(ge=0, lt=2**63)] = 1
     unit: Literal["animal", "session"] = "animal"
     weighting: Literal["time", "animal"] = "time"
     core: Annotated[float, Field(gt=0, lt=1)] = 0.5
@@ -214,9 +233,17 @@ class Study(Section):
 
     @model_validator(mode="after")
     def _names_are_unambiguous(self) -> Self:
-        twice = [name for name, times in Counter(s.name.casefold() for s in self.species).items() if times > 1]
-        if twice:
-            raise ValueError(f"species {twice[0]!r} is listed twice; each species has one table")
+        listed = [s.name for s in self.species]
+        if (spaced := badly_spaced(listed)) is not None:
+            raise ValueError(
+                f"species {spaced!r} has spaces at an end or in a row, or not plain ones; write single spaces"
+            )
+        if (twice := named_twice(listed)) is not None:
+            raise ValueError(f"species {twice!r} is listed twice, spelling aside; each species has one table")
+        unseen = {key(label) for label in self.logs.out_of_sight}
+        both = next((zone for zone in self.zones.names if key(zone) in unseen), None)
+        if both is not None:
+            raise ValueError(f"{both!r} is a zone and stands in `logs.out_of_sight` too; it can be only one of them")
         demand = self.analysis.demand
         if demand in ("intake", "body_mass"):
             without = [s.name for s in self.species if getattr(s, demand) is None]

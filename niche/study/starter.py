@@ -83,12 +83,12 @@ def write_starter(folder: Path) -> list[Path]:
     OutputError
         The folder holds something already, or cannot be written.
     """
-    if folder.exists() and (not folder.is_dir() or any(folder.iterdir())):
-        raise OutputError(
-            f"{folder} is there already and not empty; name a new folder, so that nothing is overwritten."
-        )
     written = []
     try:
+        if folder.exists() and (not folder.is_dir() or any(folder.iterdir())):
+            raise OutputError(
+                f"{folder} is there already and not empty; name a new folder, so that nothing is overwritten."
+            )
         for name, text in FILES.items():
             path = folder / name
             path.parent.mkdir(parents=True, exist_ok=True)
@@ -96,4 +96,6 @@ def write_starter(folder: Path) -> list[Path]:
             written.append(path)
     except OSError as error:
         raise OutputError(f"{folder}: cannot be written ({error.strerror}).") from None
+    except ValueError as error:  # a path with a NUL in it
+        raise OutputError(f"{str(folder)!r}: cannot be written ({error}).") from None
     return written

@@ -126,7 +126,7 @@ def test_without_listed_species_each_name_is_taken_with_spaces_tidied(field):
     [
         ("  A  b ", "A b", "a b"),
         ("\u00a0Ａ\u00a0", "A", "a"),
-        ("STRASSE", "STRASSE", "strasse"),
+        ("Straße", "Straße", "strasse"),
         ("", "", ""),
         (" \n", "", ""),
     ],

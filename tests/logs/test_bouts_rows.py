@@ -143,6 +143,13 @@ def test_times_with_and_without_offset_in_one_file_are_told_apart(field):
     assert field.rows(log) == {"used": 2}
 
 
+def test_all_ends_without_offset_stop_where_the_starts_have_one(field):
+    rows = [field.bout("08:00", "2026-09-03T08:10"), field.bout("08:10", "2026-09-03T08:20")]
+    log = field.read(rows, logs='time_zone = "Europe/Berlin"')
+    assert {(e.row, e.field) for e in log.ledger.entries} == {(2, "end"), (3, "end")}
+    assert field.rows(log) == {"stop": 2}
+
+
 def test_the_message_of_a_stop_names_file_row_field_and_value(field):
     log = field.read([field.bout(), field.bout("09:00", "09:10", zone="mudd")], [field.bout("x", animal="GY")])
     with pytest.raises(LogError) as caught:

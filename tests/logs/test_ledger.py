@@ -79,13 +79,13 @@ def test_a_row_that_moves_from_another_file_opens_a_gap_nowhere_else():
 def test_stops_come_by_file_and_row():
     ledger = Ledger()
     for row, action, file in (
-        (9, "stop", "b.csv"),
-        (7, "stop", "a.csv"),
+        (2, "stop", "b.csv"),
+        (9, "stop", "a.csv"),
         (3, "set_aside", "a.csv"),
-        (2, "stop", "a.csv"),
+        (7, "stop", "a.csv"),
     ):
         ledger.dispose([entry(row, action, file=file)])
-    assert [(e.file, e.row) for e in ledger.stops] == [("a.csv", 2), ("a.csv", 7), ("b.csv", 9)]
+    assert [(e.file, e.row) for e in ledger.stops] == [("a.csv", 7), ("a.csv", 9), ("b.csv", 2)]
 
 
 def test_time_is_counted_in_whole_numbers_of_any_size():

@@ -103,7 +103,7 @@ def test_entries_are_counted_from_one(texts):
 @pytest.mark.parametrize(
     ("broken", "passage"),
     [
-        ("title = Two waders\n", "at line 1"),
+        ("title = Two waders\n", "at line 1, column 9). Text stands in quotes; lists in square brackets."),
         ('title = "a"\ntitle = "b"\n', "at line 2"),
         ('title = "a\n', "at line 1"),
         ("[logs\n", "at line 1"),

@@ -63,7 +63,7 @@ def read_csv(path: Path, name: str, ledger: Ledger, piece_rows: int = PIECE_ROWS
 
 
 def _pieces(reader: Reader, name: str, ledger: Ledger, piece_rows: int) -> Iterator[Piece]:
-    header = _next_record(reader, name)
+    header = _next_record(reader, name, 1)
     if header is None or not any(header):
         raise LogError(f"{name}: line 1: no header. The first line names the columns.")
     headings = [" ".join(cell.split()) for cell in header]
@@ -74,8 +74,14 @@ def _pieces(reader: Reader, name: str, ledger: Ledger, piece_rows: int) -> Itera
             )
     width, records, rows, begun = len(headings), [], [], False
     line = reader.line_num + 1
-    while (record := _next_record(reader, name)) is not None:
-        if len(record) == width:
+    while (record := _next_record(reader, name, line)) is not None:
+        if reader.line_num > line and _holds_rows(record, width):
+            problem = (
+                f"a quoted cell runs on to line {reader.line_num} and holds what look like whole rows; is the quote at "
+                "its end missing?"
+            )
+            _set_aside(ledger, name, line, ",".join(record)[:80], "quote left open", problem, "stop")
+        elif len(record) == width:
             if any(record):
                 records.append(record)
                 rows.append(line)
@@ -100,14 +106,28 @@ def _set_aside(ledger: Ledger, name: str, line: int, value: str, reason: str, pr
     ledger.dispose([Entry(name, line, "", value, reason, problem, action)])
 
 
-def _next_record(reader: Reader, name: str) -> list[str] | None:
+def _holds_rows(record: list[str], width: int) -> bool:
+    """Whether a cell with line breaks has as many commas a break as a row has: rows swallowed by an open quote.
+
+    Such a record can have the right number of cells, so that nothing else would tell of the rows inside it.
+    """
+    breaks = ((cell, max(cell.count("\n"), cell.count("\r"))) for cell in record)
+    return width > 2 and any(times and cell.count(",") >= times * (width - 1) for cell, times in breaks)
+
+
+def _next_record(reader: Reader, name: str, line: int) -> list[str] | None:
     try:
         return next(reader, None)
     except csv.Error as error:
         raise LogError(
-            f"{name}: line {reader.line_num}: {error}. A quoted cell must end with a quote before the next comma or line "
-            "end; two quotes in a row stand for one."
+            f"{name}: line {line}: {error}{_found_at(line, reader.line_num)}. A quoted cell must end with a quote before "
+            "the next comma or line end; two quotes in a row stand for one."
         ) from None
+
+
+def _found_at(line: int, end: int) -> str:
+    """Words for the place where it showed, if the row began on an earlier line."""
+    return f" (seen at line {end}, in the row that begins here)" if end > line else ""
 
 
 def _piece(name: str, headings: list[str], records: list[list[str]], rows: list[int]) -> Piece:

@@ -12,7 +12,7 @@ import pyarrow.compute as pc
 from numpy.typing import NDArray
 
 from niche.errors import LogError
-from niche.logs.clocks import UNREADABLE, read_times
+from niche.logs.clocks import DAY, UNREADABLE, Instants, read_times
 from niche.logs.labels import Labels, key, listing, propose, tidy
 from niche.logs.ledger import Action, Entry, Ledger
 from niche.logs.pieces import Piece
@@ -22,6 +22,9 @@ from niche.study.model import Study
 _UNIT_MS = {"s": 1000, "min": 60_000, "h": 3_600_000}
 _LONGEST = 100 * 366 * 86_400_000
 """A century: a longer bout is a slip of the pen."""
+_LONG = ("long bout", "longer than a day; used as it stands")
+_SHOWN = 80
+"""Letters of a cell that the ledger keeps: enough to know it by."""
 
 
 @dataclass
@@ -113,23 +116,46 @@ class Bouts:
     def _times(self, rows: _Rows) -> tuple[NDArray[np.int64], NDArray[np.int64], NDArray[np.bool_]]:
         """Start, end, and whether both could be read in the right order."""
         logs = self.study.logs
-        start, readable = self._time(rows, logs.columns.start, "start")
         if logs.columns.duration is not None:
+            (instants,) = self._instants(rows, [logs.columns.start])
+            start, readable = self._time(rows, instants, logs.columns.start, "start")
             length, fine = self._duration(rows, logs.columns.duration)
+            rows.flagged(
+                "duration", readable & fine & (length > DAY), _Cells(rows.piece.column(logs.columns.duration)), *_LONG
+            )
             return start, start + length, readable & fine
-        end, fine = self._time(rows, logs.columns.end, "end")
+        starts, stops = self._instants(rows, [logs.columns.start, logs.columns.end])
+        start, readable = self._time(rows, starts, logs.columns.start, "start")
+        end, fine = self._time(rows, stops, logs.columns.end, "end")
         timed = readable & fine
         ends = Labels.of(rows.piece.column(logs.columns.end))
+        beyond = timed & (end - start > _LONGEST)
+        advice = "more than a century after the start; is the year right?"
+        rows.problem("end", beyond, ends, "unreadable time", advice, logs.problems.unreadable)
+        timed &= ~beyond
         backward = timed & (end < start)
         advice = "the end is before the start; if the bout ran past midnight, give the end the next day's date"
         rows.problem("end", backward, ends, "end before start", advice, logs.problems.end_before_start)
         rows.flagged("end", timed & (end == start), ends, "zero duration", "kept, adds no time")
+        rows.flagged("end", timed & (end - start > DAY), ends, *_LONG)
         return start, end, timed & ~backward
 
-    def _time(self, rows: _Rows, heading: str | None, name: str) -> tuple[NDArray[np.int64], NDArray[np.bool_]]:
+    def _instants(self, rows: _Rows, headings: list[str | None]) -> list[Instants]:
+        """Times of several columns, read row by row: which time of the file comes first must not hang on the pieces."""
+        columns, each = [rows.piece.column(heading) for heading in headings], len(headings)
+        order = np.arange(each * len(rows.piece.rows)).reshape(each, -1).T.ravel()
+        text = pc.take(pa.concat_arrays(columns), pa.array(order))
+        found = read_times(text, self.study.logs.time_zone, self.has_offset)
+        self.has_offset = found.has_offset
+        return [
+            Instants(found.ms[i::each], found.problem[i::each], found.repair[i::each], found.has_offset)
+            for i in range(each)
+        ]
+
+    def _time(
+        self, rows: _Rows, instants: Instants, heading: str | None, name: str
+    ) -> tuple[NDArray[np.int64], NDArray[np.bool_]]:
         column = rows.piece.column(heading)
-        instants = read_times(column, self.study.logs.time_zone, self.has_offset)
-        self.has_offset = instants.has_offset
         blank = np.asarray(pc.equal(pc.utf8_trim_whitespace(column), "")) & (instants.problem == UNREADABLE)
         labels = _Cells(column)
         rows.problem(name, blank, labels, f"{name} missing", "a bout without it has no length")
@@ -176,6 +202,8 @@ class _Rows:
     piece: Piece
     ledger: Ledger
     problems: dict[int, list[Entry]] = field(default_factory=dict)
+    notes: list[tuple[int, Entry]] = field(default_factory=list)
+    """Repairs and flags, with the position of the row: they are told of rows that are used."""
 
     def problem(
         self,
@@ -215,12 +243,15 @@ class _Rows:
     ) -> None:
         """A line in the ledger that moves no row."""
         for position in np.flatnonzero(which).tolist():
-            self.ledger.note(self._entry(position, name, labels, reason, advice, action))
+            self.notes.append((position, self._entry(position, name, labels, reason, advice, action)))
 
     def settle(self, milliseconds: NDArray[np.int64], unseen: NDArray[np.bool_]) -> NDArray[np.bool_]:
         """Account for every row of the piece; True for those that become visits."""
         for position, entries in sorted(self.problems.items()):
             self.ledger.dispose(entries, int(milliseconds[position]))
+        for position, entry in self.notes:
+            if position not in self.problems:
+                self.ledger.note(entry)
         kept = np.ones(len(self.piece.rows), dtype=bool)
         kept[list(self.problems)] = False
         for action, which in (("used", kept & ~unseen), ("out_of_sight", kept & unseen)):
@@ -238,4 +269,5 @@ class _Rows:
     ) -> Entry:
         value = labels.at(position)
         text = advice if isinstance(advice, str) else advice[value]
-        return Entry(self.piece.file, int(self.piece.rows[position]), name, value, reason, text, action)
+        shown = value if len(value) <= _SHOWN else value[:_SHOWN] + "..."
+        return Entry(self.piece.file, int(self.piece.rows[position]), name, shown, reason, text, action)
