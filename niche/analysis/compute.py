@@ -131,6 +131,7 @@ def analyse(
         outcomes = pair_outcomes(usage, draws[ALPHA], capacity or {}, generators[len(usage.species) :], few)
     values = (point["proportion"], pooled["proportion"], draws["proportion"], left_out["proportion"])
     proportion = estimator.estimate(*values, estimator.units(1)[:, None], "logit", (0.0, 1.0))
+    proportion = _bounded_at_edges(proportion, usage, confidence)
     use = _use(material, proportion, draws["proportion"], options, usage)
     other = _other_weighting(usage, weighting) if "pianka" in overlap else None
     notes = notes_on(usage, options, breadth, overlap, coefficients, capacity or {}, other)
@@ -138,6 +139,23 @@ def analyse(
     if empty:
         warnings.warn(f"No use was recorded for {', '.join(empty)}.", NicheWarning, stacklevel=2)
     return Analysis(usage, options, strata, use, breadth, overlap, coefficients, outcomes, notes)
+
+
+def _bounded_at_edges(proportion: Estimate, usage: Usage, confidence: float) -> Estimate:
+    """Ends for zones that no unit used, or that took all use of every unit, where nothing varies.
+
+    If none of n units uses a zone, fewer than a share ``1 − tail^(1/n)`` of all units do, at that confidence, and the mean
+    use cannot exceed that share; likewise from above.
+    """
+    tail = (1.0 - confidence) / 2.0
+    enough = (usage.unit_counts >= FEWEST_UNITS)[:, None]
+    reach = tail ** (1.0 / np.maximum(usage.unit_counts, 1))[:, None]
+    none, every = enough & (proportion.value == 0), enough & (proportion.value == 1)
+    return replace(
+        proportion,
+        low=np.where(every, reach, np.where(none, 0.0, proportion.low)),
+        high=np.where(none, 1.0 - reach, np.where(every, 1.0, proportion.high)),
+    )
 
 
 def _use(material: Material, proportion: Estimate, draws: Floats, options: Options, usage: Usage) -> Use:

@@ -1,4 +1,4 @@
-"""Every statistic of one set of weights: the one place where indices are called, for estimates, resamples and left-out units."""
+"""Every statistic of one set of weights: the one place where indices are called, for estimates and resamples alike."""
 
 from __future__ import annotations
 

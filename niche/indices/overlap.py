@@ -146,7 +146,7 @@ def _noise_in_distance(apart: Floats, variance: Floats) -> Floats:
         ratio = np.where(spread > 0, true / spread, np.inf)
         ratio = np.minimum(ratio, 40.0)
         excess = spread * (np.sqrt(2.0 / np.pi) * np.exp(-0.5 * ratio * ratio) - 2.0 * ratio * ndtr(-ratio))
-    return np.minimum(excess, apart)
+    return np.asarray(np.minimum(excess, apart))
 
 
 def horn(p: Floats, variance: Floats | float = 0.0) -> Floats:

@@ -20,7 +20,7 @@ def jackknife_t(evidence: Evidence, confidence: float) -> Interval:
     """Student's t interval about the estimate on the statistic's scale, with the leave-one-out variance.
 
     Assumes that the estimate is near symmetric on its scale. Good with few units; where the estimate stands at the edge
-    of the scale (an overlap of 0) there is no upper end, for nothing observed bounds it.
+    of the scale (an overlap of 0) nothing observed bounds it, and the interval runs to the end of the range.
 
     Parameters
     ----------
@@ -37,10 +37,10 @@ def jackknife_t(evidence: Evidence, confidence: float) -> Interval:
         reach = stdtrit(parts.freedom, 0.5 + confidence / 2.0) * np.sqrt(parts.variance)
         centre = evidence.forward(evidence.estimate)
         low, high = evidence.back(centre - reach), evidence.back(centre + reach)
-    at_edge = np.isinf(centre)
     undefined = np.isnan(evidence.left_out).sum(axis=0)
-    low = np.where(at_edge & np.isfinite(evidence.estimate), evidence.estimate, low)
-    return Interval(low, np.where(at_edge, np.nan, high), undefined)
+    low = np.where(np.isneginf(centre), evidence.estimate, low)
+    high = np.where(np.isneginf(centre), np.inf, np.where(np.isposinf(centre), evidence.estimate, high))
+    return Interval(np.where(np.isposinf(centre), -np.inf, low), high, undefined)
 
 
 def percentile_interval(evidence: Evidence, confidence: float) -> Interval:

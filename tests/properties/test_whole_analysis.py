@@ -30,19 +30,21 @@ class Twin:
         self.c = slow.products(time, drawn)
         self.v = slow.visit_products([a.tolist() for a in data.visits.values()], drawn)
         self.p = [slow.proportions(table, units) for table, units in zip(time, drawn, strict=True)]
+        self.noise = [slow.variances(table, units) for table, units in zip(time, drawn, strict=True)]
 
     def raw(self, name: str) -> list[float]:
         """An index of all species or pairs, row by row, before it is held to its range."""
         one: dict[str, Callable[[int], float]] = {
             "levins": lambda s: slow.levins(self.c, s),
             "levins_standardized": lambda s: slow.levins_standardized(self.c, s, self.zones),
-            "shannon": lambda s: slow.shannon(self.p[s]),
+            "shannon": lambda s: slow.shannon(self.p[s], self.noise[s]),
         }
         two: dict[str, Callable[[int, int], float]] = {
             "pianka": lambda s, t: slow.pianka(self.c, s, t),
             "morisita_horn": lambda s, t: slow.morisita_horn(self.c, s, t),
             "morisita": lambda s, t: slow.morisita_horn(self.v, s, t),
-            "schoener": lambda s, t: slow.schoener(self.p[s], self.p[t]),
+            "schoener": lambda s, t: slow.schoener(self.p[s], self.p[t], self.noise[s], self.noise[t], s == t),
+            "horn": lambda s, t: slow.horn(self.p[s], self.p[t], self.noise[s], self.noise[t], s == t),
             "alpha": lambda s, t: slow.alpha(self.c, s, t, self.demand[s], self.demand[t]),
         }
         if name == "proportion":
@@ -78,6 +80,7 @@ def test_every_estimate_and_interval(data: Watched, weighting: str, seed: int, r
         confidence=CONFIDENCE,
         seed=seed,
         weighting=weighting,
+        interval="percentile",
         demand=demand,  # type: ignore[arg-type]
     )
     units = [len(t) for t in data.time.values()]
@@ -94,6 +97,9 @@ def test_every_estimate_and_interval(data: Watched, weighting: str, seed: int, r
                 assert np.isnan(got).all(), name
             else:
                 ends = np.quantile(defined, [(1 - CONFIDENCE) / 2, (1 + CONFIDENCE) / 2])
+                reach = ((1 - CONFIDENCE) / 2) ** (1 / units[s])
+                if name == "proportion" and value[cell] in (0, 1):  # nothing varies, and n units bound it
+                    ends = [0, 1 - reach] if value[cell] == 0 else [reach, 1]
                 np.testing.assert_allclose(got, ends, rtol=1e-9, atol=1e-12, err_msg=name)
             lost = 0 if min(units[s], units[t]) < 3 else int(np.isnan(column).sum())
             assert np.ravel(estimate.undefined)[cell] == lost, name
