@@ -14,6 +14,8 @@ from niche.resampling.evidence import Scale
 from niche.resampling.intervals import FEWEST_UNITS
 from niche.usage import Usage
 
+_HUGE = 1e300
+
 _SLACK = 1e-9
 """Rounding alone is no excursion out of the range."""
 
@@ -43,7 +45,9 @@ class Estimator:
     ) -> Estimate:
         """An estimate held to its limits, with its interval; cells with too few units get none."""
         clipped = ((draws < limits[0] - _SLACK) | (draws > limits[1] + _SLACK)).sum(axis=0)
-        evidence = Evidence(value, np.clip(draws, *limits), left_out, self.owner, units, scale)
+        # Held to the limits only at the end: draws heaped up at a limit would mislead a bias correction. An infinite draw
+        # (units that share no zone) is the largest of all, not an undefined one.
+        evidence = Evidence(value, np.clip(draws, -_HUGE, _HUGE), left_out, self.owner, units, scale)
         interval = INTERVALS[self.options.interval](evidence, self.options.confidence)
         few = units < FEWEST_UNITS
         least, most, mover = _influence(value, np.clip(left_out, *limits), limits)

@@ -54,7 +54,8 @@ def _few_units(usage: Usage) -> Iterator[str]:
     few = [f"{name} ({n})" for name, n in counts.items() if FEWEST_UNITS <= n < FEW_UNITS]
     if few:
         yield (
-            f"Fewer than {FEW_UNITS} {usage.unit}s: {', '.join(few)}. Read intervals from so few with care; a percentile interval would be too narrow."
+            f"Fewer than {FEW_UNITS} {usage.unit}s: {', '.join(few)}. Read intervals from so few "
+            "with care; a percentile interval would be too narrow."
         )
 
 
@@ -117,8 +118,8 @@ def _nothing_shared(usage: Usage, overlap: Mapping[str, Estimate]) -> Iterator[s
     for s, t in combinations(range(len(usage.species)), 2):
         if value[s, t] == 0:
             yield (
-                f"{usage.species[s]} and {usage.species[t]} were never seen in the same zone. That bounds nothing from above: "
-                "there is no upper end of an interval."
+                f"{usage.species[s]} and {usage.species[t]} were never seen in the same zone. That bounds nothing "
+                "from above: the interval runs to the end of the range."
             )
 
 

@@ -145,3 +145,21 @@ def test_the_default_interval_keeps_its_promise(animals):
         pianka = niche.analyse(niche.Usage.from_units(use, zones=list("abcdef")), resamples=1, indices={"pianka"})
         inside += pianka.overlap["pianka"].low[0, 1] <= truth <= pianka.overlap["pianka"].high[0, 1]
     assert stats.binomtest(int(inside), runs, 0.95).pvalue > 0.001, inside / runs
+
+
+def test_draws_above_the_range_do_not_upset_the_bias_correction():
+    """Overlap near 1: many resamples lie above it, and are held to it only when the interval has been made."""
+    use = {"a": [[4, 2, 1], [3, 3, 1], [5, 1, 1], [2, 4, 1]], "b": [[4, 3, 1], [3, 2, 2], [5, 2, 0], [3, 3, 1]]}
+    usage = niche.Usage.from_units(use, zones=list("xyz"))
+    pianka = niche.analyse(usage, resamples=999, interval="bca").overlap["pianka"]
+    assert pianka.clipped[0, 1] > 300
+    assert pianka.low[0, 1] < 0.98
+    assert pianka.high[0, 1] == 1
+
+
+def test_an_infinite_draw_is_the_largest_and_not_undefined():
+    usage = niche.Usage.from_units({"a": [[1, 0], [1, 0], [0, 1]]}, zones=["x", "y"])
+    levins = niche.analyse(usage, resamples=999, interval="percentile").breadth["levins"]
+    # Two of three drawn alike share a zone; a draw of one of each side shares none: infinitely broad, held to 2 zones.
+    assert levins.high[0] == 2
+    assert 0 < levins.undefined[0] < 200
