@@ -105,6 +105,16 @@ def test_zones_that_nobody_used(data: Watched, added: int, weighting: str) -> No
 
 
 @examples(30)
+@given(watched(), st.integers(0, 5), WEIGHTING)
+def test_units_without_use(data: Watched, place: int, weighting: str) -> None:
+    """An animal that was never in a zone tells nothing of zones, and is no unit of a resample."""
+    more = data.changed(lambda a: np.insert(a, min(place, len(a)), 0, axis=0))
+    first, second = quick(data.usage(), weighting=weighting), quick(more.usage(), weighting=weighting)
+    assert_same(first, second, exactly=True)
+    assert first.table("overlap")["units_1"].tolist() == second.table("overlap")["units_1"].tolist()
+
+
+@examples(30)
 @given(watched(), st.integers(1, 400), WEIGHTING)
 def test_tile_of_resamples(data: Watched, tile: int, weighting: str) -> None:
     """However few resamples a block holds, the same results to the last bit."""

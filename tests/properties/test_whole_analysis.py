@@ -13,7 +13,7 @@ from hypothesis import strategies as st
 
 import niche
 from niche.dynamics import OUTCOMES
-from niche.resampling import draw_range, streams, unit_weights
+from niche.resampling import streams, unit_weights
 
 RESAMPLES, CONFIDENCE = 12, 0.8
 Draw = list[list[int]]
@@ -148,8 +148,7 @@ def test_outcomes(data: Watched, seed: int, rest: st.DataObject) -> None:
         low = rest.draw(st.floats(10, 100))
         capacity[name] = (low, low * rest.draw(st.floats(1, 3)), rest.draw(st.sampled_from(["uniform", "log-uniform"])))
     twins = [Twin(data, drawn, [1.0, 1.0], "time") for drawn in _drawn(data, seed)]
-    generators = streams(seed, 4)
-    k1, k2 = (draw_range(*capacity[name], RESAMPLES, generators[2 + i]) for i, name in enumerate(data.time))  # type: ignore[arg-type]
+    k1, k2 = (_capacities(*capacity[name], rng) for name, rng in zip(data.time, streams(seed, 4)[2:], strict=True))
     ends: dict[str, list[tuple[float, float]]] = {name: [] for name in OUTCOMES}
     undefined = 0
     for b, twin in enumerate(twins):
@@ -170,6 +169,14 @@ def test_outcomes(data: Watched, seed: int, rest: st.DataObject) -> None:
         assert pair.share[i] == len(ends[name]) / (RESAMPLES - undefined)
         medians = np.median(ends[name], axis=0) if ends[name] else (math.nan, math.nan)
         np.testing.assert_allclose([pair.n_1[i], pair.n_2[i]], medians, rtol=1e-6)
+
+
+def _capacities(low: float, high: float, distribution: str, rng: np.random.Generator) -> list[float]:
+    """K in each resample: evenly between the ends, or evenly between their logarithms."""
+    places = [float(x) for x in rng.random(RESAMPLES)]
+    if distribution == "uniform":
+        return [low + place * (high - low) for place in places]
+    return [math.exp(math.log(low) + place * (math.log(high) - math.log(low))) for place in places]
 
 
 def _end(case: str, alpha: float, beta: float, k1: float, k2: float) -> tuple[float, float]:
