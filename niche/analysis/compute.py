@@ -7,6 +7,7 @@ from collections.abc import Callable, Collection, Mapping
 from dataclasses import replace
 
 import numpy as np
+from scipy.special import betaincinv
 
 from niche.analysis.estimates import Estimator
 from niche.analysis.evidence import gather
@@ -131,7 +132,7 @@ def analyse(
         outcomes = pair_outcomes(usage, draws[ALPHA], capacity or {}, generators[len(usage.species) :], few)
     values = (point["proportion"], pooled["proportion"], draws["proportion"], left_out["proportion"])
     proportion = estimator.estimate(*values, estimator.units(1)[:, None], "logit", (0.0, 1.0))
-    proportion = _bounded_at_edges(proportion, usage, confidence)
+    proportion = _bounded_by_users(proportion, usage, confidence)
     use = _use(material, proportion, draws["proportion"], options, usage)
     other = _other_weighting(usage, weighting) if "pianka" in overlap else None
     notes = notes_on(usage, options, breadth, overlap, coefficients, capacity or {}, other)
@@ -141,21 +142,20 @@ def analyse(
     return Analysis(usage, options, strata, use, breadth, overlap, coefficients, outcomes, notes)
 
 
-def _bounded_at_edges(proportion: Estimate, usage: Usage, confidence: float) -> Estimate:
-    """Ends for zones that no unit used, or that took all use of every unit, where nothing varies.
+def _bounded_by_users(proportion: Estimate, usage: Usage, confidence: float) -> Estimate:
+    """Ends no further out than the number of units that used a zone allows.
 
-    If none of n units uses a zone, fewer than a share ``1 − tail^(1/n)`` of all units do, at that confidence, and the mean
-    use cannot exceed that share; likewise from above.
+    Mean use of a zone cannot exceed the share of all units that use it, and that share has an exact binomial limit
+    (Clopper & Pearson 1934) from k of n units watched. It matters where few units used a zone, or none, and the spread
+    between units tells little or nothing; likewise from below where units used nothing else.
     """
+    n = usage.unit_counts[:, None]
+    some = np.stack([(t > 0).sum(axis=0) for t in usage.time])
+    only = np.stack([(t == t.sum(axis=1, keepdims=True)).sum(axis=0) for t in usage.time])
     tail = (1.0 - confidence) / 2.0
-    enough = (usage.unit_counts >= FEWEST_UNITS)[:, None]
-    reach = tail ** (1.0 / np.maximum(usage.unit_counts, 1))[:, None]
-    none, every = enough & (proportion.value == 0), enough & (proportion.value == 1)
-    return replace(
-        proportion,
-        low=np.where(every, reach, np.where(none, 0.0, proportion.low)),
-        high=np.where(none, 1.0 - reach, np.where(every, 1.0, proportion.high)),
-    )
+    most = np.where(some < n, betaincinv(some + 1, np.maximum(n - some, 1), 1.0 - tail), 1.0)
+    least = np.where(only > 0, betaincinv(np.maximum(only, 1), n - only + 1, tail), 0.0)
+    return replace(proportion, low=np.maximum(proportion.low, least), high=np.minimum(proportion.high, most))
 
 
 def _use(material: Material, proportion: Estimate, draws: Floats, options: Options, usage: Usage) -> Use:

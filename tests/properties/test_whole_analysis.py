@@ -10,6 +10,7 @@ import slow_twins as slow
 from generated import Watched, estimates, examples, watched
 from hypothesis import assume, given
 from hypothesis import strategies as st
+from scipy.stats import binomtest
 
 import niche
 from niche.dynamics import OUTCOMES
@@ -98,9 +99,15 @@ def test_every_estimate_and_interval(data: Watched, weighting: str, seed: int, r
                 assert np.isnan(got).all(), name
             else:
                 ends = np.quantile(defined, [(1 - CONFIDENCE) / 2, (1 + CONFIDENCE) / 2]).clip(low, high)
-                reach = ((1 - CONFIDENCE) / 2) ** (1 / units[s])
-                if name == "proportion" and value[cell] in (0, 1):  # nothing varies, and n units bound it
-                    ends = [0, 1 - reach] if value[cell] == 0 else [reach, 1]
+                if (
+                    name == "proportion"
+                ):  # held by the exact binomial limits of the units that used the zone, or it alone
+                    rows, zone = [*data.time.values()][s], cell % len(data.zones)
+                    users, alone = (rows[:, zone] > 0).sum(), (rows[:, zone] == rows.sum(axis=1)).sum()
+                    most, least = (
+                        binomtest(int(k), units[s]).proportion_ci(CONFIDENCE, "exact") for k in (users, alone)
+                    )
+                    ends = [max(ends[0], least.low), min(ends[1], most.high)]
                 np.testing.assert_allclose(got, ends, rtol=1e-9, atol=1e-12, err_msg=name)
             lost = 0 if min(units[s], units[t]) < 3 else int(np.isnan(column).sum())
             assert np.ravel(estimate.undefined)[cell] == lost, name

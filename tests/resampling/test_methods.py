@@ -100,11 +100,17 @@ def test_an_overlap_of_zero_is_bounded_by_nothing_but_its_range():
     assert (pianka.value[0, 1], pianka.low[0, 1], pianka.high[0, 1]) == (0, 0, 1)
 
 
-def test_a_zone_that_none_of_n_animals_used_is_bounded_by_their_number():
-    usage = niche.Usage.from_units({"dunlin": [[3, 0], [2, 0], [1, 0], [5, 0]]}, zones=["mud", "sand"])
+def test_use_of_a_zone_is_bounded_by_how_many_animals_used_it():
+    usage = niche.Usage.from_units(
+        {"dunlin": [[3, 0, 0], [2, 0, 1], [1, 0, 0], [5, 0, 0]]}, zones=["mud", "sand", "creek"]
+    )
     proportion = niche.analyse(usage, resamples=50).use.proportion
-    assert (proportion.low[0, 1], proportion.high[0, 1]) == pytest.approx((0, 1 - 0.025 ** (1 / 4)))
-    assert (proportion.low[0, 0], proportion.high[0, 0]) == pytest.approx((0.025 ** (1 / 4), 1))
+    exact = [stats.binomtest(k, 4).proportion_ci(0.95, "exact") for k in (0, 1, 3)]
+    assert (proportion.low[0, 1], proportion.high[0, 1]) == pytest.approx((0, exact[0].high))
+    # One animal in four used the creek: without it the use is none, and the spread bounds nothing.
+    assert (proportion.low[0, 2], proportion.high[0, 2]) == pytest.approx((0, exact[1].high))
+    # Three were on mud all the time.
+    assert proportion.low[0, 0] == pytest.approx(exact[2].low)
 
 
 def test_leaving_one_animal_out_is_the_analysis_without_it():
