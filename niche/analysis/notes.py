@@ -6,6 +6,8 @@ from collections.abc import Iterator, Mapping
 from itertools import combinations
 from typing import TYPE_CHECKING
 
+import numpy as np
+
 from niche.indices.catalogue import BREADTH, OVERLAP
 from niche.resampling.intervals import FEW_UNITS, FEWEST_UNITS
 
@@ -29,7 +31,8 @@ def notes_on(
         *_few_units(usage),
         *_lost_draws(usage, options, {**breadth, **overlap}, coefficients),
         *_weightings_differ(usage, options, overlap, other_weighting),
-        *_plug_in(breadth, overlap),
+        *_one_animal(usage, breadth, overlap),
+        *_nothing_shared(usage, overlap),
         *_no_capacity(usage, coefficients, capacity),
         *_effort(usage),
     )
@@ -52,7 +55,8 @@ def _few_units(usage: Usage) -> Iterator[str]:
     few = [f"{name} ({n})" for name, n in counts.items() if FEWEST_UNITS <= n < FEW_UNITS]
     if few:
         yield (
-            f"Fewer than {FEW_UNITS} {usage.unit}s: {', '.join(few)}. Percentile intervals from so few may be too narrow."
+            f"Fewer than {FEW_UNITS} {usage.unit}s: {', '.join(few)}. Read intervals from so few "
+            "with care; a percentile interval would be too narrow."
         )
 
 
@@ -91,13 +95,33 @@ def _weightings_differ(
             )
 
 
-def _plug_in(breadth: Mapping[str, Estimate], overlap: Mapping[str, Estimate]) -> Iterator[str]:
-    names = [name for name in ("shannon", "schoener") if name in breadth or name in overlap]
-    if names:
-        yield (
-            f"Values of {' and '.join(map(_title, names))} are pooled: with few animals they lean low, and so do "
-            "their intervals. Values from products leave out each animal’s product with itself and do not."
-        )
+def _one_animal(usage: Usage, breadth: Mapping[str, Estimate], overlap: Mapping[str, Estimate]) -> Iterator[str]:
+    """Results that leaving out one unit moves by more than half the width of their interval."""
+    for name, e in {**breadth, **overlap}.items():
+        with np.errstate(invalid="ignore"):
+            moved = np.maximum(np.abs(e.least - e.value), np.abs(e.most - e.value))
+            much = np.argwhere(moved > 0.5 * (e.high - e.low))
+        for cell in much[: 1 if e.value.ndim == 1 else 2]:
+            who = " and ".join(usage.species[s] for s in dict.fromkeys(cell.tolist()))
+            at = tuple(cell)
+            yield (
+                f"{who}: one {usage.unit} alone moves {_title(name)} by more than half its interval: without it the value "
+                f"runs from {e.least[at]:.2f} to {e.most[at]:.2f}."
+            )
+            if e.value.ndim == 2:
+                break
+
+
+def _nothing_shared(usage: Usage, overlap: Mapping[str, Estimate]) -> Iterator[str]:
+    if "pianka" not in overlap:
+        return
+    value = overlap["pianka"].value
+    for s, t in combinations(range(len(usage.species)), 2):
+        if value[s, t] == 0:
+            yield (
+                f"{usage.species[s]} and {usage.species[t]} were never seen in the same zone. That bounds nothing "
+                "from above: the interval runs to the end of the range."
+            )
 
 
 def _no_capacity(usage: Usage, coefficients: Coefficients | None, capacity: Mapping[str, object]) -> Iterator[str]:
@@ -129,13 +153,22 @@ def level(confidence: float) -> str:
     return f"{100 * confidence:.10g}%"
 
 
+_METHODS = {
+    "jackknife_t": "jackknife-t",
+    "percentile": "percentile",
+    "widened_percentile": "widened percentile",
+    "bca": "BCa",
+}
+
+
 def interval_rests_on(usage: Usage, options: Options) -> str:
     """What every interval of an analysis rests on, in one line for captions and tables."""
     counts = ", ".join(f"{name} {n}" for name, n in zip(usage.species, usage.unit_counts.tolist(), strict=True))
-    return (
-        f"{level(options.confidence)} percentile intervals, {options.resamples} resamples of {usage.unit}s ({counts}), "
-        f"seed {options.seed}."
-    )
+    method = f"{level(options.confidence)} {_METHODS[options.interval]} intervals"
+    drawn = f"{options.resamples} resamples, seed {options.seed}"
+    if options.interval == "jackknife_t":
+        return f"{method} over {usage.unit}s ({counts}); shares of outcomes and of cores from {drawn}."
+    return f"{method} over {usage.unit}s ({counts}), {drawn}."
 
 
 def cores_in_words(analysis: Analysis) -> tuple[str, ...]:

@@ -9,6 +9,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from niche.indices.products import Floats
+from niche.resampling import Strata
 from niche.usage import Usage
 
 if TYPE_CHECKING:
@@ -26,6 +27,7 @@ class Options:
     seed: int = 1
     weighting: Weighting = "time"
     core: float = 0.5
+    interval: str = "jackknife_t"
 
 
 @dataclass(frozen=True)
@@ -37,13 +39,17 @@ class Estimate:
     value : array
         The estimate, held to the range that the population value can have.
     low, high : array
-        Percentile interval over resampled units; NaN with fewer than 3 units.
+        Interval by the method of the options; NaN with fewer than 3 units.
     pooled : array
         The textbook value from pooled use, to compare with the literature.
     undefined : array of int
         Resamples that gave no value, left out of the interval.
     clipped : array of int
         Resamples in which sampling noise led outside the possible range, counted at its edge.
+    least, most : array
+        Range of the value with one unit left out at a time; NaN with fewer than 2 units.
+    mover : array of int
+        Which unit moves the value most when it is left out, as a position among `Analysis.strata`'s units; -1 for none.
     """
 
     value: Floats
@@ -52,6 +58,9 @@ class Estimate:
     pooled: Floats
     undefined: NDArray[np.int64]
     clipped: NDArray[np.int64]
+    least: Floats
+    most: Floats
+    mover: NDArray[np.int64]
 
 
 @dataclass(frozen=True)
@@ -107,6 +116,7 @@ class Analysis:
 
     usage: Usage
     options: Options
+    strata: Strata
     use: Use
     breadth: dict[str, Estimate]
     overlap: dict[str, Estimate]

@@ -53,6 +53,7 @@ def run_study(
         seed=settings.seed,
         weighting=settings.weighting,
         core=settings.core,
+        interval=settings.interval,
         demand={name: study.demand_of(name) for name in usage.species},
         capacity={s.name: (s.k.low, s.k.high, s.k.distribution) for s in study.species if s.k is not None},
         indices=indices,

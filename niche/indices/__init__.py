@@ -5,18 +5,23 @@ Axes: ``S`` species, ``Z`` zones, ``...`` any leading axes (a resample is one). 
 ``(..., S, S)``. Element ``[s, t]`` of a matrix of coefficients is the effect of t on s.
 """
 
-from niche.indices.breadth import levins, levins_standardized, shannon
+from niche.indices.breadth import hurlbert_breadth, levins, levins_standardized, shannon, smith
 from niche.indices.catalogue import BREADTH, OVERLAP, Index
 from niche.indices.competition import macarthur_levins, within_range
 from niche.indices.core import core_zones
-from niche.indices.overlap import morisita_horn, pianka, schoener
+from niche.indices.inputs import Inputs
+from niche.indices.overlap import horn, hurlbert_overlap, morisita_horn, pianka, schoener
 from niche.indices.products import products, proportions
 
 __all__ = [
     "BREADTH",
     "OVERLAP",
     "Index",
+    "Inputs",
     "core_zones",
+    "horn",
+    "hurlbert_breadth",
+    "hurlbert_overlap",
     "levins",
     "levins_standardized",
     "macarthur_levins",
@@ -26,5 +31,6 @@ __all__ = [
     "proportions",
     "schoener",
     "shannon",
+    "smith",
     "within_range",
 ]

@@ -68,18 +68,21 @@ def levins_standardized(c: Floats, zones: int) -> Floats:
     return (levins(c) - 1.0) / (zones - 1)
 
 
-def shannon(p: Floats) -> Floats:
+def shannon(p: Floats, variance: Floats | float = 0.0) -> Floats:
     """Shannon's index ``H′ = −Σ p ln p``, in natural logarithms.
 
     Parameters
     ----------
     p : array, shape (..., S, Z)
         Proportions of use.
+    variance : array, shape (..., S, Z), optional
+        Sampling variance of each proportion. ``E[p̂ ln p̂]`` exceeds ``p ln p`` by ``v / 2p`` to second order, so that much
+        is added back; never more than ``p / 2`` a zone, for the expansion means nothing beyond.
 
     Returns
     -------
     array, shape (..., S)
-        From 0 (one zone) to ``ln Z`` (even use), in nats.
+        From 0 (one zone) to ``ln Z`` (even use), in nats. The correction can lead a little above ``ln Z``.
 
     References
     ----------
@@ -91,6 +94,76 @@ def shannon(p: Floats) -> Floats:
     >>> shannon(np.array([[0.5, 0.5], [1.0, 0.0]])).round(4)
     array([0.6931, 0.    ])
     """
-    logarithm = np.log(p, out=np.zeros_like(p), where=p > 0)
     # 0 − x rather than −x: a single zone is 0, never −0.
-    return np.asarray(0.0 - (p * logarithm).sum(axis=-1))
+    return np.asarray(0.0 - (p_log_p(p) - p_log_p_bias(p, variance)).sum(axis=-1))
+
+
+def p_log_p(p: Floats) -> Floats:
+    """``p ln p``, 0 for a zone without use."""
+    return p * np.log(p, out=np.zeros_like(p), where=p > 0)
+
+
+def p_log_p_bias(p: Floats, variance: Floats | float) -> Floats:
+    """By how much ``p̂ ln p̂`` is expected to exceed ``p ln p``: ``v / 2p``, at most ``p / 2``."""
+    with np.errstate(divide="ignore", invalid="ignore"):
+        return np.where(p > 0, np.minimum(variance / (2.0 * p), p / 2.0), 0.0)
+
+
+def hurlbert_breadth(weighted: Floats) -> Floats:
+    """Hurlbert's breadth ``B′ = 1 / Σ (p² / a)``, with zones weighted by what is available.
+
+    Parameters
+    ----------
+    weighted : array, shape (..., S, S)
+        Product matrix with zone weights 1/a, ``a`` the share of the habitat that a zone makes up.
+
+    Returns
+    -------
+    array, shape (..., S)
+        From the smallest share (only the rarest zone is used) to 1 (use in proportion to availability).
+
+    References
+    ----------
+    Hurlbert, S. H. (1978) The measurement of niche overlap and some relatives. *Ecology* 59, 67–77.
+
+    Examples
+    --------
+    >>> import numpy as np
+    >>> from niche.indices.products import products
+    >>> hurlbert_breadth(products(np.array([[1.0, 3.0]]), zone_weights=np.array([4.0, 4.0 / 3.0])))
+    array([1.])
+    """
+    return levins(weighted)
+
+
+def smith(p: Floats, availability: Floats, variance: Floats | float = 0.0) -> Floats:
+    """Smith's breadth ``FT = Σ √(p a)``: how alike use and availability are.
+
+    Parameters
+    ----------
+    p : array, shape (..., S, Z)
+    availability : array, shape (Z,)
+        Shares that sum to 1.
+    variance : array, shape (..., S, Z), optional
+        Sampling variance of each proportion; ``E √p̂`` falls short of ``√p`` by ``v / 8 p^1.5`` to second order, at most
+        ``√p / 4`` taken.
+
+    Returns
+    -------
+    array, shape (..., S)
+        From the root of the smallest share to 1 (use in proportion to availability).
+
+    References
+    ----------
+    Smith, E. P. (1982) Niche breadth, resource availability, and inference. *Ecology* 63, 1675–1681.
+
+    Examples
+    --------
+    >>> import numpy as np
+    >>> smith(np.array([[0.25, 0.75]]), np.array([0.25, 0.75]))
+    array([1.])
+    """
+    root = np.sqrt(p)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        short = np.where(p > 0, np.minimum(variance / (8.0 * p * root), root / 4.0), 0.0)
+    return np.asarray(((root + short) * np.sqrt(availability)).sum(axis=-1))

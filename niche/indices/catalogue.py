@@ -1,4 +1,4 @@
-"""The hand-written list of indices: tables, report and command line all read it.
+"""The hand-written list of indices: tables, intervals, report and command line all read it.
 
 To add an index, write its function beside its kin and give it a line here (see ``DEVELOPERS.md``).
 """
@@ -10,53 +10,64 @@ from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Literal
 
-from niche.indices.breadth import levins, levins_standardized, shannon
-from niche.indices.overlap import morisita_horn, pianka, schoener
+from niche.indices.breadth import hurlbert_breadth, levins, levins_standardized, shannon, smith
+from niche.indices.inputs import Inputs
+from niche.indices.overlap import horn, hurlbert_overlap, morisita_horn, pianka, schoener
 from niche.indices.products import Floats
 
-Basis = Literal["between", "visits", "proportions"]
-"""What an index is estimated from: products between different units, products between different visits, or pooled
-proportions."""
+Need = Literal["use", "visits", "availability"]
+"""What must be known beside the use of zones."""
 
 
 @dataclass(frozen=True)
 class Index:
     """One index: how it is computed, the range of the population value, and where it comes from."""
 
-    function: Callable[[Floats, int], Floats]
-    """Takes the array that ``basis`` names, and the number of zones."""
-    basis: Basis
+    function: Callable[[Inputs], Floats]
     title: str
-    upper: Callable[[int], float]
-    """Largest value the population can have, from the number of zones."""
-    lower: float
     source: str
+    lower: float = 0.0
+    upper: Callable[[int], float] = lambda zones: 1.0
+    """Largest value the population can have, from the number of zones."""
+    needs: Need = "use"
+    scale: Literal["plain", "log"] = "log"
+    """Scale on which its sampling is closest to symmetric, by the coverage study."""
+
+
+def _given(array: Floats | None) -> Floats:
+    """What an index needs and `Need` promised."""
+    if array is None:
+        raise AssertionError("an index was asked for without what it needs")
+    return array
 
 
 BREADTH: dict[str, Index] = {
-    "levins": Index(lambda c, zones: levins(c), "between", "Levins’ B", lambda zones: zones, 1.0, "Levins 1968"),
+    "levins": Index(lambda x: levins(x.c), "Levins’ B", "Levins 1968", 1.0, lambda zones: zones, scale="plain"),
     "levins_standardized": Index(
-        levins_standardized, "between", "Levins’ B, standardised", lambda zones: 1.0, 0.0, "Hurlbert 1978"
+        lambda x: levins_standardized(x.c, x.zones), "Levins’ B, standardised", "Hurlbert 1978", scale="plain"
     ),
-    "shannon": Index(
-        lambda p, zones: shannon(p), "proportions", "Shannon’s H′ (natural log)", math.log, 0.0, "Shannon 1948"
+    "shannon": Index(lambda x: shannon(x.p, x.variance), "Shannon’s H′ (natural log)", "Shannon 1948", upper=math.log),
+    "hurlbert": Index(
+        lambda x: hurlbert_breadth(_given(x.weighted)), "Hurlbert’s B′", "Hurlbert 1978", needs="availability"
+    ),
+    "smith": Index(
+        lambda x: smith(x.p, _given(x.availability), x.variance), "Smith’s FT", "Smith 1982", needs="availability"
     ),
 }
 
 OVERLAP: dict[str, Index] = {
-    "pianka": Index(lambda c, zones: pianka(c), "between", "Pianka’s O", lambda zones: 1.0, 0.0, "Pianka 1973"),
-    "morisita_horn": Index(
-        lambda c, zones: morisita_horn(c), "between", "Morisita–Horn", lambda zones: 1.0, 0.0, "Horn 1966"
-    ),
+    "pianka": Index(lambda x: pianka(x.c), "Pianka’s O", "Pianka 1973"),
+    "morisita_horn": Index(lambda x: morisita_horn(x.c), "Morisita–Horn", "Horn 1966"),
     "morisita": Index(
-        lambda c, zones: morisita_horn(c),
-        "visits",
-        "Morisita (counts of visits)",
-        lambda zones: 1.0,
-        0.0,
-        "Morisita 1959",
+        lambda x: morisita_horn(_given(x.visits)), "Morisita (counts of visits)", "Morisita 1959", needs="visits"
     ),
-    "schoener": Index(
-        lambda p, zones: schoener(p), "proportions", "Schoener’s shared share", lambda zones: 1.0, 0.0, "Schoener 1970"
+    "schoener": Index(lambda x: schoener(x.p, x.variance), "Schoener’s shared share", "Schoener 1970", scale="plain"),
+    "horn": Index(lambda x: horn(x.p, x.variance), "Horn’s R₀ (equal weights)", "Horn 1966"),
+    "hurlbert": Index(
+        lambda x: hurlbert_overlap(_given(x.weighted)),
+        "Hurlbert’s L",
+        "Hurlbert 1978",
+        upper=lambda zones: math.inf,
+        needs="availability",
     ),
 }

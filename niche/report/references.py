@@ -31,6 +31,7 @@ _SOURCES = {
     "408–418.",
     "shannon": "Shannon, C. E. (1948) A mathematical theory of communication. <i>Bell System Technical Journal</i> 27, "
     "379–423.",
+    "smith": "Smith, E. P. (1982) Niche breadth, resource availability, and inference. <i>Ecology</i> 63, 1675–1681.",
     "volterra": "Volterra, V. (1926) Fluctuations in the abundance of a species considered mathematically. <i>Nature</i> "
     "118, 558–560.",
 }
@@ -43,6 +44,9 @@ _OF_INDEX = {
     "morisita_horn": ("morisita", "horn"),
     "morisita": ("morisita",),
     "schoener": ("schoener",),
+    "horn": ("horn",),
+    "hurlbert": ("hurlbert",),
+    "smith": ("smith",),
 }
 
 

@@ -27,21 +27,32 @@ class Sums:
     ----------
     use : array, shape (..., S, Z)
         ``Σ_u w_u t_u`` for each species.
-    same_product, same_total : array, shape (..., S)
-        ``Σ_u w_u² <t_u, t_u>`` and ``Σ_u w_u² T_u²``.
+    same : array, shape (..., S, Z)
+        ``Σ_u w_u² t_u²`` in each zone.
+    same_total : array, shape (..., S)
+        ``Σ_u w_u² T_u²``.
     """
 
     use: Floats
-    same_product: Floats
+    same: Floats
     same_total: Floats
 
-    def pooled(self) -> Floats:
+    def pooled(self, zone_weights: Floats | None = None) -> Floats:
         """Textbook product matrix, every unit paired with itself too; shape (..., S, S)."""
-        return products(self.use)
+        return products(self.use, zone_weights=zone_weights)
 
-    def between(self) -> Floats:
+    def between(self, zone_weights: Floats | None = None) -> Floats:
         """Product matrix between different units, shape (..., S, S)."""
-        return products(self.use, self.same_product, self.same_total)
+        same = self.same if zone_weights is None else self.same * zone_weights
+        return products(self.use, same.sum(axis=-1), self.same_total, zone_weights)
+
+    def squares(self) -> Floats:
+        """Products of different units within each zone, shape (..., S, Z): the estimate of ``p²``."""
+        totals = self.use.sum(axis=-1)
+        pairs = totals * totals - self.same_total
+        with np.errstate(divide="ignore", invalid="ignore"):
+            squares = (self.use * self.use - self.same) / pairs[..., None]
+        return np.where((pairs > 1e-12 * totals * totals)[..., None], squares, np.nan)
 
 
 def sum_units(weights: Sequence[Floats], use: Sequence[Floats], *, single: bool = False) -> Sums:
@@ -61,32 +72,19 @@ def sum_units(weights: Sequence[Floats], use: Sequence[Floats], *, single: bool 
     -------
     Sums
     """
-    summed, same_product, same_total = [], [], []
+    summed, same, same_total = [], [], []
     for w, t in zip(weights, use, strict=True):
         summed.append(w @ t)
         squares = w * w
         totals = t.sum(axis=1)
-        same_product.append(squares @ (totals if single else np.einsum("uz,uz->u", t, t)))
+        same.append(squares @ (t if single else t * t))
         same_total.append(squares @ (totals if single else totals * totals))
-    return Sums(np.stack(summed, -2), np.stack(same_product, -1), np.stack(same_total, -1))
+    return Sums(np.stack(summed, -2), np.stack(same, -2), np.stack(same_total, -1))
 
 
 def streams(seed: int, count: int) -> list[np.random.Generator]:
     """Independent, reproducible streams of random numbers, one for each species or input."""
     return [np.random.default_rng(child) for child in np.random.SeedSequence(seed).spawn(count)]
-
-
-def unit_weights(units: int, resamples: int, rng: np.random.Generator) -> Floats:
-    """Weights of ``resamples`` draws of ``units`` units with replacement.
-
-    Returns
-    -------
-    array, shape (resamples, units)
-        Whole numbers from 0; each row sums to ``units``. No columns where a species has no unit.
-    """
-    if units == 0:
-        return np.zeros((resamples, 0))
-    return rng.multinomial(units, np.full(units, 1.0 / units), size=resamples).astype(np.float64)
 
 
 def draw_range(low: float, high: float, distribution: Distribution, resamples: int, rng: np.random.Generator) -> Floats:

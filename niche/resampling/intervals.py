@@ -49,17 +49,29 @@ def percentile(draws: Floats, confidence: float) -> Interval:
     >>> percentile(np.arange(101.0), confidence=0.9)
     Interval(low=np.float64(5.0), high=np.float64(95.0), undefined=np.int64(0))
     """
+    tail = (1.0 - confidence) / 2.0
+    return percentile_at(draws, tail, 1.0 - tail)
+
+
+def percentile_at(draws: Floats, low: Floats | float, high: Floats | float) -> Interval:
+    """Order statistics over the first axis at two levels, which may differ from cell to cell.
+
+    Parameters
+    ----------
+    draws : array, shape (B, ...)
+    low, high : float or array, shape (...)
+        Levels between 0 and 1.
+    """
     ordered = np.sort(draws, axis=0)  # NaN sorts last
     defined = np.isfinite(ordered).sum(axis=0)
-    tail = (1.0 - confidence) / 2.0
     return Interval(
-        _order_statistic(ordered, defined, tail),
-        _order_statistic(ordered, defined, 1.0 - tail),
+        _order_statistic(ordered, defined, low),
+        _order_statistic(ordered, defined, high),
         np.asarray(draws.shape[0] - defined, dtype=np.int64)[()],
     )
 
 
-def _order_statistic(ordered: Floats, defined: NDArray[np.intp], level: float) -> Floats:
+def _order_statistic(ordered: Floats, defined: NDArray[np.intp], level: Floats | float) -> Floats:
     """Quantile of the first ``defined`` values of each sorted column."""
     position = level * np.maximum(defined - 1, 0)
     # An exact order statistic must not become a blend by rounding in the line above.

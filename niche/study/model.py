@@ -130,6 +130,7 @@ class Settings(Section):
     seed: Annotated[int, Field(ge=0)] = 1
     unit: Literal["animal", "session"] = "animal"
     weighting: Literal["time", "animal"] = "time"
+    interval: Literal["jackknife_t", "percentile", "widened_percentile", "bca"] = "jackknife_t"
     core: Annotated[float, Field(gt=0, lt=1)] = 0.5
     demand: Literal["intake", "body_mass", "equal"] | None = None
     mass_exponent: Annotated[float, Field(gt=0, le=2)] = 0.75

@@ -100,13 +100,13 @@ def test_out_writes_the_file_and_nothing_to_stdout(log, tmp_path):
 
 
 def test_options_replace_the_settings_of_the_study():
-    one = run("overlap", SAMPLE, "--seed", "1", "--format", "csv", "--resamples", "200").stdout
-    again = run("overlap", SAMPLE, "--seed", "1", "--format", "csv", "--resamples", "200").stdout
-    other = run("overlap", SAMPLE, "--seed", "2", "--format", "csv", "--resamples", "200").stdout
+    one = run("outcome", SAMPLE, "--seed", "1", "--format", "csv", "--resamples", "200").stdout
+    again = run("outcome", SAMPLE, "--seed", "1", "--format", "csv", "--resamples", "200").stdout
+    other = run("outcome", SAMPLE, "--seed", "2", "--format", "csv", "--resamples", "200").stdout
     session = run("overlap", SAMPLE, "--unit", "session", "--format", "json", "--resamples", "200").stdout
     assert one == again != other
     assert json.loads(session)["rows"][0]["units_1"] == 45
-    assert "resamples of sessions" in json.loads(session)["notes"][0]
+    assert "intervals over sessions" in json.loads(session)["notes"][0]
 
 
 def test_weighting_by_animal_counts_each_animal_once(log):

@@ -66,7 +66,7 @@ def test_no_shared_zone_gives_a_window_without_end(make):
     assert (low, high) == pytest.approx(axes.get_xlim())
     arrows = {line.get_marker() for line in axes.lines} & {"<", ">"}
     assert arrows == {"<", ">"}
-    assert "between 0 (0 to 0) and no limit" in drawing.alt
+    assert "between 0 (0 to no limit) and no limit" in drawing.alt
 
 
 def test_few_animals_and_no_use_are_told_in_words(few, unseen):

@@ -95,8 +95,8 @@ def levins_standardized(c: Table, s: int, zones: int) -> float:
     return (levins(c, s) - 1) / (zones - 1)
 
 
-def shannon(p: Sequence[float]) -> float:
-    return sum(-x * math.log(x) for x in p if x > 0)
+def shannon(p: Sequence[float], noise: Sequence[float]) -> float:
+    return NAN if math.isnan(sum(p) + sum(noise)) else -sum(map(_entropy_term, p, noise))
 
 
 def pianka(c: Table, s: int, t: int) -> float:
@@ -107,8 +107,54 @@ def morisita_horn(c: Table, s: int, t: int) -> float:
     return divided(2 * c[s][t], c[s][s] + c[t][t])
 
 
-def schoener(p: Sequence[float], q: Sequence[float]) -> float:
-    return sum(min(a, b) for a, b in zip(p, q, strict=True))
+def variances(table: Table, drawn: Sequence[int]) -> list[float]:
+    """Sampling variance of each proportion: its square less the product of different units, at least 0."""
+    total = sum(sum(table[u]) for u in drawn)
+    pairs = sum(sum(table[u]) * sum(table[v]) for u in drawn for v in drawn if u != v)
+    result = []
+    for z in range(len(table[0]) if table else 0):
+        p = divided(sum(table[u][z] for u in drawn), total)
+        square = (
+            divided(sum(table[u][z] * table[v][z] for u in drawn for v in drawn if u != v), pairs) if pairs else NAN
+        )
+        result.append(max(p * p - square, 0.0) if not math.isnan(square) else NAN)
+    return result
+
+
+def schoener(
+    p: Sequence[float], q: Sequence[float], p_noise: Sequence[float], q_noise: Sequence[float], same: bool
+) -> float:
+    """Shared share, less what noise is expected to add to each distance: the mean of a folded normal, by its formula."""
+    if same:
+        return NAN if math.isnan(sum(p)) else 1.0
+    shared = 1.0
+    for a, b, v, w in zip(p, q, p_noise, q_noise, strict=True):
+        apart, variance = abs(a - b), v + w
+        if variance > 0:
+            true, spread = math.sqrt(max(apart * apart - variance, 0.0)), math.sqrt(variance)
+            folded = spread * math.sqrt(2 / math.pi) * math.exp(-true * true / (2 * variance))
+            folded += true * math.erf(true / (spread * math.sqrt(2)))
+            apart -= min(folded - true, apart)
+        elif math.isnan(variance):
+            return NAN
+        shared -= apart / 2
+    return shared
+
+
+def _entropy_term(x: float, variance: float) -> float:
+    return x * math.log(x) - min(variance / (2 * x), x / 2) if x > 0 else 0.0
+
+
+def horn(
+    p: Sequence[float], q: Sequence[float], p_noise: Sequence[float], q_noise: Sequence[float], same: bool
+) -> float:
+    if math.isnan(sum(p) + sum(q) + sum(p_noise) + sum(q_noise)):
+        return NAN
+    if same:
+        return 1.0
+    joint = sum(_entropy_term(a + b, v + w) for a, b, v, w in zip(p, q, p_noise, q_noise, strict=True))
+    own = sum(map(_entropy_term, p, p_noise)) + sum(map(_entropy_term, q, q_noise))
+    return (joint - own) / (2 * math.log(2))
 
 
 def alpha(c: Table, s: int, t: int, demand_s: float, demand_t: float) -> float:

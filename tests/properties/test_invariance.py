@@ -83,7 +83,7 @@ def test_zones_that_nobody_used(data: Watched, added: int, weighting: str) -> No
     wider = data.changed(lambda a: np.pad(a, ((0, 0), (0, added))))
     first, second = quick(data.usage(), weighting=weighting), quick(wider.usage(), weighting=weighting)
     ours, theirs = estimates(first), estimates(second)
-    for name in ours.keys() - {"proportion", "levins", "levins_standardized"}:
+    for name in ours.keys() - {"proportion", "levins", "levins_standardized", "shannon"}:
         for field in FIELDS:
             a, b = getattr(ours[name], field), getattr(theirs[name], field)
             np.testing.assert_allclose(a, b, rtol=1e-9, atol=1e-12, err_msg=f"{name}.{field}")
@@ -92,6 +92,8 @@ def test_zones_that_nobody_used(data: Watched, added: int, weighting: str) -> No
     np.testing.assert_allclose(before["levins"].pooled, after["levins"].pooled, rtol=1e-12)
     # With more zones an estimate may stand higher before it is held to the range.
     np.testing.assert_allclose(before["levins"].value, np.minimum(after["levins"].value, zones), rtol=1e-9)
+    np.testing.assert_allclose(before["shannon"].pooled, after["shannon"].pooled, rtol=1e-12)
+    np.testing.assert_allclose(before["shannon"].value, np.minimum(after["shannon"].value, np.log(zones)), atol=1e-9)
     np.testing.assert_allclose(
         before["levins_standardized"].pooled * (zones - 1),
         after["levins_standardized"].pooled * (zones + added - 1),
@@ -100,6 +102,16 @@ def test_zones_that_nobody_used(data: Watched, added: int, weighting: str) -> No
     )
     np.testing.assert_array_equal(first.use.core, second.use.core[:, :zones])
     assert not second.use.core[:, zones:].any()
+
+
+@examples(30)
+@given(watched(), st.integers(0, 5), WEIGHTING)
+def test_units_without_use(data: Watched, place: int, weighting: str) -> None:
+    """An animal that was never in a zone tells nothing of zones, and is no unit of a resample."""
+    more = data.changed(lambda a: np.insert(a, min(place, len(a)), 0, axis=0))
+    first, second = quick(data.usage(), weighting=weighting), quick(more.usage(), weighting=weighting)
+    assert_same(first, second, exactly=True)
+    assert first.table("overlap")["units_1"].tolist() == second.table("overlap")["units_1"].tolist()
 
 
 @examples(30)

@@ -129,6 +129,8 @@ UNITS = st.sampled_from(["animal", "session"])
 @given(logs(), UNITS)
 def test_tally_against_a_loop_over_rows(rows: list[Row], unit: str) -> None:
     log, study = _read([rows], unit)
+    assert not log.ledger.stops
+    assert log.ledger.rows["set_aside"] == len(rows) - len(set(rows))
     usage = niche.Usage.from_visits(log.visits, study)
     expected = _tally(rows, unit)
     assert usage.visits is not None

@@ -10,10 +10,11 @@ import slow_twins as slow
 from generated import Watched, estimates, examples, watched
 from hypothesis import assume, given
 from hypothesis import strategies as st
+from scipy.stats import binomtest
 
 import niche
 from niche.dynamics import OUTCOMES
-from niche.resampling import draw_range, streams, unit_weights
+from niche.resampling import streams, unit_weights
 
 RESAMPLES, CONFIDENCE = 12, 0.8
 Draw = list[list[int]]
@@ -30,19 +31,21 @@ class Twin:
         self.c = slow.products(time, drawn)
         self.v = slow.visit_products([a.tolist() for a in data.visits.values()], drawn)
         self.p = [slow.proportions(table, units) for table, units in zip(time, drawn, strict=True)]
+        self.noise = [slow.variances(table, units) for table, units in zip(time, drawn, strict=True)]
 
     def raw(self, name: str) -> list[float]:
         """An index of all species or pairs, row by row, before it is held to its range."""
         one: dict[str, Callable[[int], float]] = {
             "levins": lambda s: slow.levins(self.c, s),
             "levins_standardized": lambda s: slow.levins_standardized(self.c, s, self.zones),
-            "shannon": lambda s: slow.shannon(self.p[s]),
+            "shannon": lambda s: slow.shannon(self.p[s], self.noise[s]),
         }
         two: dict[str, Callable[[int, int], float]] = {
             "pianka": lambda s, t: slow.pianka(self.c, s, t),
             "morisita_horn": lambda s, t: slow.morisita_horn(self.c, s, t),
             "morisita": lambda s, t: slow.morisita_horn(self.v, s, t),
-            "schoener": lambda s, t: slow.schoener(self.p[s], self.p[t]),
+            "schoener": lambda s, t: slow.schoener(self.p[s], self.p[t], self.noise[s], self.noise[t], s == t),
+            "horn": lambda s, t: slow.horn(self.p[s], self.p[t], self.noise[s], self.noise[t], s == t),
             "alpha": lambda s, t: slow.alpha(self.c, s, t, self.demand[s], self.demand[t]),
         }
         if name == "proportion":
@@ -78,6 +81,7 @@ def test_every_estimate_and_interval(data: Watched, weighting: str, seed: int, r
         confidence=CONFIDENCE,
         seed=seed,
         weighting=weighting,
+        interval="percentile",
         demand=demand,  # type: ignore[arg-type]
     )
     units = [len(t) for t in data.time.values()]
@@ -85,7 +89,8 @@ def test_every_estimate_and_interval(data: Watched, weighting: str, seed: int, r
         low, high = point.limits(name)
         value = [slow.clipped(x, low, high) for x in point.raw(name)]
         np.testing.assert_allclose(estimate.value.ravel(), value, rtol=1e-9, atol=1e-12, err_msg=name)
-        draws = np.array([[slow.clipped(x, low, high) for x in twin.raw(name)] for twin in twins])
+        # Held to the range only after the ends have been taken; an infinite draw is the largest of all.
+        draws = np.clip(np.array([twin.raw(name) for twin in twins]), -1e300, 1e300)
         for cell, column in enumerate(draws.T):
             s, t = _species_of(name, cell, len(names), len(data.zones))
             got = [np.ravel(getattr(estimate, end))[cell] for end in ("low", "high")]
@@ -93,7 +98,16 @@ def test_every_estimate_and_interval(data: Watched, weighting: str, seed: int, r
             if min(units[s], units[t]) < 3 or not len(defined):
                 assert np.isnan(got).all(), name
             else:
-                ends = np.quantile(defined, [(1 - CONFIDENCE) / 2, (1 + CONFIDENCE) / 2])
+                ends = np.quantile(defined, [(1 - CONFIDENCE) / 2, (1 + CONFIDENCE) / 2]).clip(low, high)
+                if (
+                    name == "proportion"
+                ):  # held by the exact binomial limits of the units that used the zone, or it alone
+                    rows, zone = [*data.time.values()][s], cell % len(data.zones)
+                    users, alone = (rows[:, zone] > 0).sum(), (rows[:, zone] == rows.sum(axis=1)).sum()
+                    most, least = (
+                        binomtest(int(k), units[s]).proportion_ci(CONFIDENCE, "exact") for k in (users, alone)
+                    )
+                    ends = [max(ends[0], least.low), min(ends[1], most.high)]
                 np.testing.assert_allclose(got, ends, rtol=1e-9, atol=1e-12, err_msg=name)
             lost = 0 if min(units[s], units[t]) < 3 else int(np.isnan(column).sum())
             assert np.ravel(estimate.undefined)[cell] == lost, name
@@ -142,8 +156,7 @@ def test_outcomes(data: Watched, seed: int, rest: st.DataObject) -> None:
         low = rest.draw(st.floats(10, 100))
         capacity[name] = (low, low * rest.draw(st.floats(1, 3)), rest.draw(st.sampled_from(["uniform", "log-uniform"])))
     twins = [Twin(data, drawn, [1.0, 1.0], "time") for drawn in _drawn(data, seed)]
-    generators = streams(seed, 4)
-    k1, k2 = (draw_range(*capacity[name], RESAMPLES, generators[2 + i]) for i, name in enumerate(data.time))  # type: ignore[arg-type]
+    k1, k2 = (_capacities(*capacity[name], rng) for name, rng in zip(data.time, streams(seed, 4)[2:], strict=True))
     ends: dict[str, list[tuple[float, float]]] = {name: [] for name in OUTCOMES}
     undefined = 0
     for b, twin in enumerate(twins):
@@ -164,6 +177,14 @@ def test_outcomes(data: Watched, seed: int, rest: st.DataObject) -> None:
         assert pair.share[i] == len(ends[name]) / (RESAMPLES - undefined)
         medians = np.median(ends[name], axis=0) if ends[name] else (math.nan, math.nan)
         np.testing.assert_allclose([pair.n_1[i], pair.n_2[i]], medians, rtol=1e-6)
+
+
+def _capacities(low: float, high: float, distribution: str, rng: np.random.Generator) -> list[float]:
+    """K in each resample: evenly between the ends, or evenly between their logarithms."""
+    places = [float(x) for x in rng.random(RESAMPLES)]
+    if distribution == "uniform":
+        return [low + place * (high - low) for place in places]
+    return [math.exp(math.log(low) + place * (math.log(high) - math.log(low))) for place in places]
 
 
 def _end(case: str, alpha: float, beta: float, k1: float, k2: float) -> tuple[float, float]:
