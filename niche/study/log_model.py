@@ -6,6 +6,7 @@ from typing import Annotated, Any, Literal, Self
 
 from pydantic import Field, field_validator, model_validator
 
+from niche.study.names import named_twice
 from niche.study.rule_columns import with_rule_columns
 from niche.study.section import Positive, Section, Text, Texts
 from niche.study.standard_columns import with_standard_columns
@@ -52,6 +53,14 @@ class Columns(Section):
     @classmethod
     def _empty_is_absent(cls, heading: Any) -> Any:
         return None if heading == "" else heading
+
+    @model_validator(mode="after")
+    def _columns_are_apart(self) -> Self:
+        # A deployment may stand for the session, and a tag for the animal.
+        named = self.model_dump(exclude={"deployment", "tag", "antenna"}).values()
+        if (twice := named_twice([heading for heading in named if heading is not None])) is not None:
+            raise ValueError(f"the heading {twice!r} is named for two things; each has a column of its own")
+        return self
 
 
 class FileForm(Section):
@@ -287,6 +296,12 @@ class Logs(Section):
 
     def _bouts_have_an_end(self) -> None:
         columns = self.columns
+        if (needed := next((n for n in ("species", "zone", "start") if getattr(columns, n) is None), None)) is not None:
+            raise ValueError(f"the rule 'bouts' needs the heading of its {needed} column as `columns.{needed}`")
+        if columns.animal is None and columns.session is None:
+            raise ValueError(
+                "`animal` is empty and there is no `session`; one of them must be named, as the sampling unit"
+            )
         if columns.end is not None and columns.duration is not None:
             raise ValueError(
                 "a bout ends by its `end` or its `duration` column: name one of the two under `logs.columns`"

@@ -7,13 +7,13 @@ with the key's path, what was found and what is allowed. `docs/study_file.md` de
 from __future__ import annotations
 
 import math
-from collections import Counter
 from pathlib import Path
 from typing import Annotated, Literal, Self
 
 from pydantic import Field, model_validator
 
 from niche.study.log_model import Logs
+from niche.study.names import badly_spaced, key, named_twice
 from niche.study.section import Positive, Section, Text
 
 
@@ -73,12 +73,10 @@ def check_layout(rows: tuple[str, ...], columns: tuple[str, ...], layout: tuple[
     names = [zone for row in layout for zone in row if zone]
     if not names:
         raise ValueError("the layout names no zone")
-    for zone in names:
-        if zone != " ".join(zone.split()):
-            raise ValueError(f"zone {zone!r} has spaces at an end or in a row; write single spaces")
-    twice = [zone for zone, times in Counter(zone.casefold() for zone in names).items() if times > 1]
-    if twice:
-        raise ValueError(f"zone {twice[0]!r} is named twice; each zone has one place and one name")
+    if (spaced := badly_spaced(names)) is not None:
+        raise ValueError(f"zone {spaced!r} has spaces at an end or in a row, or not plain ones; write single spaces")
+    if (twice := named_twice(names)) is not None:
+        raise ValueError(f"zone {twice!r} is named twice, spelling aside; each zone has one place and one name")
 
 
 def check_amounts(zones: tuple[str, ...], amounts: dict[str, float]) -> None:
@@ -127,7 +125,7 @@ class Settings(Section):
 
     resamples: Annotated[int, Field(ge=100, le=1_000_000)] = 9999
     confidence: Annotated[float, Field(gt=0.5, lt=1)] = 0.95
-    seed: Annotated[int, Field(ge=0)] = 1
+    seed: Annotated[int, Field(ge=0, lt=2**63)] = 1
     unit: Literal["animal", "session"] = "animal"
     weighting: Literal["time", "animal"] = "time"
     interval: Literal["jackknife_t", "percentile", "widened_percentile", "bca"] = "jackknife_t"
@@ -162,9 +160,17 @@ class Study(Section):
 
     @model_validator(mode="after")
     def _names_are_unambiguous(self) -> Self:
-        twice = [name for name, times in Counter(s.name.casefold() for s in self.species).items() if times > 1]
-        if twice:
-            raise ValueError(f"species {twice[0]!r} is listed twice; each species has one table")
+        listed = [s.name for s in self.species]
+        if (spaced := badly_spaced(listed)) is not None:
+            raise ValueError(
+                f"species {spaced!r} has spaces at an end or in a row, or not plain ones; write single spaces"
+            )
+        if (twice := named_twice(listed)) is not None:
+            raise ValueError(f"species {twice!r} is listed twice, spelling aside; each species has one table")
+        unseen = {key(label) for label in self.logs.out_of_sight}
+        both = next((zone for zone in self.zones.names if key(zone) in unseen), None)
+        if both is not None:
+            raise ValueError(f"{both!r} is a zone and stands in `logs.out_of_sight` too; it can be only one of them")
         demand = self.analysis.demand
         if demand in ("intake", "body_mass"):
             without = [s.name for s in self.species if getattr(s, demand) is None]

@@ -5,10 +5,10 @@ A message gives the path of the key, what was found there and what is allowed. A
 
 from __future__ import annotations
 
-import csv
 import difflib
+import re
 import tomllib
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator
 from pathlib import Path
 from typing import Any, get_args
 
@@ -16,7 +16,8 @@ from pydantic import BaseModel, ValidationError
 
 from niche.errors import StudyError
 from niche.study.checked_names import check_names
-from niche.study.model import Availability, Study, Zones
+from niche.study.model import Study
+from niche.study.sheet import zones_from_sheet
 
 STUDY_FILE = "study.toml"
 
@@ -54,8 +55,9 @@ def read_study(path: Path) -> Study:
     StudyError
         There is no such file, it is not TOML, or a key breaks a rule.
     """
-    file = path / STUDY_FILE if path.is_dir() else path
+    file = path
     try:
+        file = path / STUDY_FILE if path.is_dir() else path
         text = file.read_text(encoding="utf-8-sig")
     except FileNotFoundError:
         what = f"the folder has no {STUDY_FILE}" if path.is_dir() else "there is no such file"
@@ -64,6 +66,8 @@ def read_study(path: Path) -> Study:
         raise StudyError(f"{file}: byte {error.start} is not UTF-8. Save the study file as UTF-8.") from None
     except OSError as error:
         raise StudyError(f"{file}: cannot be read ({error.strerror}).") from None
+    except ValueError as error:  # a path with a NUL in it
+        raise StudyError(f"{str(file)!r}: cannot be read ({error}).") from None
     return study_from_text(text, file)
 
 
@@ -79,8 +83,8 @@ def study_from_text(text: str, file: Path) -> Study:
         study = Study.model_validate(content)
         study._folder = file.parent
         if study.zones.sheet is not None:
-            zones = _zones_from_sheet(study.folder / study.zones.sheet, study.zones)
-            study = study.model_copy(update={"zones": zones})
+            zones = zones_from_sheet(study.folder / study.zones.sheet, study.zones)
+            study = Study.model_validate({**content, "zones": zones})
             study._folder = file.parent
     except ValidationError as error:
         raise StudyError("\n".join(f"{file}: {line}" for line in _explain(error))) from None
@@ -102,13 +106,15 @@ def _explain(error: ValidationError) -> Iterator[str]:
             yield f"{path}: missing. This key is required."
         elif kind == "value_error":
             yield f"{path}: {context['error']}."
+        elif kind == "too_short" and found:
+            continue  # its entries are wrong, and have been told
         elif kind == "literal_error":
             yield f"{path}: found {_shown(found)}; allowed: {context['expected']}."
         elif kind in _TYPES:
             yield f"{path}: found {_shown(found)}; allowed: {_TYPES[kind]}."
         elif kind in ("greater_than", "greater_than_equal", "less_than", "less_than_equal"):
             word = {"gt": "above", "ge": "at least", "lt": "below", "le": "at most"}
-            rule = " and ".join(f"{word[key]} {limit:g}" for key, limit in context.items())
+            rule = " and ".join(f"{word[key]} {limit:,.10g}" for key, limit in context.items())
             yield f"{path}: found {_shown(found)}; allowed: a number {rule}."
         else:
             yield f"{path}: found {_shown(found)}; {problem['msg']}."
@@ -118,14 +124,20 @@ def _path(location: tuple[int | str, ...]) -> str:
     """Path of a key as a person would write it: ``species[2].k.low``, entries counted from 1."""
     path = ""
     for part in location:
-        path += f"[{part + 1}]" if isinstance(part, int) else ("." if path else "") + part
+        if isinstance(part, int):
+            path += f"[{part + 1}]"
+        else:
+            path += ("." if path else "") + (part if re.fullmatch(r"[\w .-]+", part) else repr(part))
     return path or "the study as a whole"
 
 
 def _shown(value: Any) -> str:
     """A value as found, short enough for one line."""
     kinds = {str: "text", bool: "true/false", int: "a whole number", float: "a number", list: "a list", dict: "a table"}
-    text = repr(value)
+    try:
+        text = repr(value)
+    except (RecursionError, ValueError):  # tables in tables without end; a number of thousands of digits
+        text = "what is too long to show"
     return f"{text if len(text) <= 60 else text[:57] + '...'} ({kinds.get(type(value), 'a date or time')})"
 
 
@@ -146,58 +158,3 @@ def _model_in(annotation: Any) -> type[BaseModel] | None:
     if isinstance(annotation, type) and issubclass(annotation, BaseModel):
         return annotation
     return next((model for part in get_args(annotation) if (model := _model_in(part))), None)
-
-
-def _zones_from_sheet(file: Path, declared: Zones) -> Zones:
-    """Zones from a zone sheet; rows and columns of the map in the order in which the sheet first names them."""
-    try:
-        with file.open(encoding="utf-8-sig", newline="") as stream:
-            records = list(csv.DictReader(stream))
-    except FileNotFoundError:
-        raise StudyError(f"{file}: zones.sheet names this file, and there is no such file.") from None
-    except (OSError, UnicodeDecodeError, csv.Error) as error:
-        raise StudyError(f"{file}: the zone sheet cannot be read as UTF-8 CSV ({error}).") from None
-    needed = ("zone", "row", "column")
-    for heading in needed:
-        if not records or heading not in records[0]:
-            raise StudyError(
-                f"{file}: line 1: no heading {heading!r}, or no zone below it. A zone sheet has the headings zone, row, "
-                "column and, if known, availability, and one line a zone."
-            )
-    cells: dict[tuple[str, str], str] = {}
-    amounts: dict[str, float] = {}
-    for line, record in enumerate(records, 2):
-        zone, row, column = ((record[heading] or "").strip() for heading in needed)
-        for heading, value in zip(needed, (zone, row, column), strict=True):
-            if not value:
-                raise StudyError(f"{file}: line {line}: {heading} is empty; every zone needs a name and a place.")
-        if (row, column) in cells:
-            raise StudyError(
-                f"{file}: line {line}: zones {cells[row, column]!r} and {zone!r} both stand in row {row!r}, column "
-                f"{column!r}; each place holds one zone."
-            )
-        cells[row, column] = zone
-        _read_amount(file, line, zone, record, amounts)
-    rows, columns = (tuple(dict.fromkeys(key[axis] for key in cells)) for axis in (0, 1))
-    availability = None
-    if amounts:
-        source = declared.availability_source or "not given"
-        availability = Availability(source=source, unit="as in the zone sheet", amounts=amounts)
-    return Zones(
-        rows=rows,
-        columns=columns,
-        layout=tuple(tuple(cells.get((row, column), "") for column in columns) for row in rows),
-        availability=availability,
-        effort=declared.effort,
-        same_across_sites=declared.same_across_sites,
-    )
-
-
-def _read_amount(file: Path, line: int, zone: str, record: Mapping[str, str | None], amounts: dict[str, float]) -> None:
-    """Add the zone's availability to ``amounts``, where the sheet gives one."""
-    written = (record.get("availability") or "").strip()
-    if written:
-        try:
-            amounts[zone] = float(written)
-        except ValueError:
-            raise StudyError(f"{file}: line {line}: availability is {written!r}; it must be a number.") from None

@@ -13,6 +13,6 @@ class Section(BaseModel):
     model_config = ConfigDict(extra="forbid", frozen=True, strict=True)
 
 
-Positive = Annotated[float, Field(gt=0, allow_inf_nan=False)]
+Positive = Annotated[float, Field(gt=0, lt=1e100, allow_inf_nan=False)]
 Text = Annotated[str, Field(min_length=1)]
 Texts = Annotated[tuple[Text, ...], Field(strict=False)]

@@ -6,6 +6,9 @@ import re
 from datetime import timedelta, timezone, tzinfo
 from zoneinfo import ZoneInfo
 
+UNPORTABLE = ("right/", "posix/", "localtime", "posixrules")
+"""Names that some machines know as time zones, others do not or take for another; `right/` counts leap seconds."""
+
 _OFFSET = re.compile(r"([+-])(\d{2}):?(\d{2})")
 
 
@@ -26,6 +29,8 @@ def time_zone(name: str) -> tzinfo:
     found = _OFFSET.fullmatch(name)
     try:
         if found is None:
+            if name.startswith(UNPORTABLE):
+                raise ValueError(name)
             return ZoneInfo(name)
         size = timedelta(hours=int(found[2]), minutes=int(found[3]))
         if int(found[3]) > 59 or size > timedelta(hours=18):
@@ -33,5 +38,5 @@ def time_zone(name: str) -> tzinfo:
         return timezone(-size if found[1] == "-" else size)
     except (KeyError, ValueError, OSError) as error:
         raise ValueError(
-            "no such time zone; give an IANA name such as Europe/Berlin or Etc/GMT-1, or an offset such as +01:00"
+            f"found {name!r}, and there is no such time zone; give an IANA name such as Europe/Berlin or Etc/GMT-1, or an offset such as +01:00"
         ) from error

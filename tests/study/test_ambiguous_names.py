@@ -55,7 +55,7 @@ def test_a_study_without_animals_names_sessions(texts):
 
 def test_a_study_without_animals_and_sessions_is_refused(texts):
     (line,) = texts.problems(texts.changed(('animal = "animal"', 'animal = ""'), ('session = "session"\n', "")))
-    assert line.startswith("logs.columns: `animal` is empty and there is no `session`")
+    assert line.startswith("logs: `animal` is empty and there is no `session`")
 
 
 @pytest.mark.parametrize(

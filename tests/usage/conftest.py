@@ -47,8 +47,9 @@ class Made:
     @staticmethod
     def visits(*rows):
         """Visits from (species, animal, session, zone, start, end), times in milliseconds."""
-        table = pd.DataFrame([(*row, "a.csv", number) for number, row in enumerate(rows, 2)], columns=COLUMNS)
-        return table.astype({"start": np.int64, "end": np.int64, "row": np.int64})
+        cells = [(*row, row[5] - row[4], "a.csv", number) for number, row in enumerate(rows, 2)]
+        table = pd.DataFrame(cells, columns=COLUMNS)
+        return table.astype({"start": np.int64, "end": np.int64, "amount": np.int64, "row": np.int64})
 
     @staticmethod
     def random_visits(seed, count):
@@ -63,6 +64,7 @@ class Made:
                 "zone": rng.choice([*ZONES, ""], count),
                 "start": start,
                 "end": start + length,
+                "amount": length,
                 "file": "a.csv",
                 "row": np.arange(2, count + 2),
             }
