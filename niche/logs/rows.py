@@ -14,6 +14,9 @@ from niche.logs.pieces import Piece
 
 Mask = NDArray[np.bool_]
 
+_SHOWN = 80
+"""Letters of a cell that the ledger keeps: enough to know it by."""
+
 
 class Written(Protocol):
     """A column as written, looked at row by row only where something is wrong."""
@@ -44,6 +47,8 @@ class Rows:
     piece: Piece
     ledger: Ledger
     problems: dict[int, list[Entry]] = field(default_factory=dict)
+    notes: dict[int, list[Entry]] = field(default_factory=dict)
+    """Repairs and flags, told only of rows that turn out to be used."""
 
     def problem(
         self,
@@ -93,6 +98,13 @@ class Rows:
         mask[list(self.problems)] = False
         return mask
 
+    def tell(self) -> None:
+        """Put repairs and flags of rows without a problem into the ledger, once."""
+        for position, entries in sorted(self.notes.items()):
+            for entry in entries if position not in self.problems else ():
+                self.ledger.note(entry)
+        self.notes.clear()
+
     def settle(self, milliseconds: NDArray[np.int64], unseen: Mask) -> Mask:
         """Account for every row of the piece, once.
 
@@ -111,6 +123,7 @@ class Rows:
         self.ledger.come_in(self.piece.file, len(self.piece.rows), int(milliseconds.sum()))
         for position, entries in sorted(self.problems.items()):
             self.ledger.dispose(entries, int(milliseconds[position]))
+        self.tell()
         kept = self.usable()
         dispositions: tuple[tuple[Action, Mask], ...] = (("used", kept & ~unseen), ("out_of_sight", kept & unseen))
         for action, which in dispositions:
@@ -122,11 +135,13 @@ class Rows:
         self, name: str, which: Mask, written: Written, reason: str, advice: str | dict[str, str], action: Action
     ) -> None:
         for position in np.flatnonzero(which).tolist():
-            self.ledger.note(self._entry(position, name, written, reason, advice, action))
+            entry = self._entry(position, name, written, reason, advice, action)
+            self.notes.setdefault(position, []).append(entry)
 
     def _entry(
         self, position: int, name: str, written: Written, reason: str, advice: str | dict[str, str], action: Action
     ) -> Entry:
         value = written.at(position)
         text = advice if isinstance(advice, str) else advice[value]
-        return Entry(self.piece.file, int(self.piece.rows[position]), name, value, reason, text, action)
+        shown = value if len(value) <= _SHOWN else value[:_SHOWN] + "..."
+        return Entry(self.piece.file, int(self.piece.rows[position]), name, shown, reason, text, action)

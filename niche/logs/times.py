@@ -65,6 +65,7 @@ class TimeReader:
     study: Study
     _file: str = field(default="", init=False)
     _has_offset: bool | None = field(default=None, init=False)
+    _agreed: bool | None = field(default=None, init=False)
     _seen: dict[str, Seen] = field(default_factory=dict, init=False)
     _nights: Nights = field(default_factory=Nights, init=False)
     _falls: Falls = field(default_factory=Falls, init=False)
@@ -106,14 +107,32 @@ class TimeReader:
         rows.problem(column.name, doubt, column.cells, CLOCK, _OUT_OF_ORDER, "stop")
         return added
 
+    def agree(self, rows: Rows, *columns: Column) -> None:
+        """Let the first time of a file, whichever column it stands in, say whether the others have offsets too."""
+        self._begin(rows.piece.file)
+        firsts = [
+            (int(np.argmax(column.written.fits)), number)
+            for number, column in enumerate(columns)
+            if column.written.fits.any()
+        ]
+        if self._agreed is None and firsts:
+            place, number = min(firsts)
+            self._agreed = bool(columns[number].written.has_offset[place])
+
+    def _begin(self, file: str) -> None:
+        """Forget what the file before had agreed on."""
+        if file != self._file:
+            self._file, self._has_offset, self._agreed = file, None, None
+
     def settle(self, rows: Rows, column: Column) -> tuple[NDArray[np.int64], Mask]:
         """Turn times as written into milliseconds of UTC, and tell the rows what is wrong."""
         logs, name, written, cells = self.study.logs, column.name, column.written, column.cells
-        if rows.piece.file != self._file:
-            self._file, self._has_offset = rows.piece.file, None
+        self._begin(rows.piece.file)
         written.mend_midnights(self._has_offset is not None)
         zone = None if logs.time_zone is None else time_zone(logs.time_zone)
-        found = to_utc(written, zone, self._has_offset, logs.clock.repeated_hour)
+        found = to_utc(
+            written, zone, self._agreed if self._has_offset is None else self._has_offset, logs.clock.repeated_hour
+        )
         self._has_offset = found.has_offset
         fine = found.fine
         self._report(rows, column, found.problem)
@@ -143,7 +162,7 @@ class TimeReader:
             rows.problem("date", np.asarray(no_date), Cells(dates), "date missing", "a time needs its date; fill it in")
             text = _together(dates, trimmed, blank, "T" if form == "iso" else " ")
         if form == "iso":
-            return text, read_iso(text)
+            return text, read_iso(trimmed if logs.columns.date is None else text)
         if "%" in form:
             return text, read_pattern(text, form)
         if decimal == ",":

@@ -54,14 +54,6 @@ class Columns(Section):
     def _empty_is_absent(cls, heading: Any) -> Any:
         return None if heading == "" else heading
 
-    @model_validator(mode="after")
-    def _columns_are_apart(self) -> Self:
-        # A deployment may stand for the session, and a tag for the animal.
-        named = self.model_dump(exclude={"deployment", "tag", "antenna"}).values()
-        if (twice := named_twice([heading for heading in named if heading is not None])) is not None:
-            raise ValueError(f"the heading {twice!r} is named for two things; each has a column of its own")
-        return self
-
 
 class FileForm(Section):
     """How the files are written. What is not given is found where that is unambiguous, and noted."""
@@ -268,10 +260,22 @@ class Logs(Section):
         return with_rule_columns(with_standard_columns(given))
 
     @model_validator(mode="after")
+    def _columns_are_apart(self) -> Self:
+        if self.file.descriptor is not None or self.file.standard is not None:
+            return self  # headings are the descriptor's or the standard's, and one may carry two things
+        # A deployment may stand for the session, and a tag for the animal.
+        named = self.columns.model_dump(exclude={"deployment", "tag", "antenna"}).values()
+        if (twice := named_twice([heading for heading in named if heading is not None])) is not None:
+            raise ValueError(f"the heading {twice!r} is named for two things; each has a column of its own")
+        return self
+
+    @model_validator(mode="after")
     def _has_what_the_rule_needs(self) -> Self:
         columns = self.columns
         if not self.files and self.file.database is None:
             raise ValueError("`files` names no log; give at least one file, or a database under `logs.file`")
+        if self.file.standard == "camtrap-dp" and self.rule != "camera":
+            raise ValueError("`file.standard` is 'camtrap-dp', which goes with rule = \"camera\": events are not stays")
         if self.rule == "bouts":
             self._bouts_have_an_end()
         dated, form = columns.date is not None, self.clock.format
@@ -284,8 +288,6 @@ class Logs(Section):
                 f"`clock.format` is {form!r}, counted from the start of each session: give `logs.sessions.file` and "
                 "`columns.session`"
             )
-        if self.file.standard == "camtrap-dp" and self.rule != "camera":
-            raise ValueError("`file.standard` is 'camtrap-dp', which goes with rule = \"camera\": events are not stays")
         if self.rule == "reads" and self.reads is None:
             raise ValueError("the rule 'reads' needs `logs.reads.gap`: the seconds without a read that end a visit")
         if self.rule == "tallies" and self.tallies is None:

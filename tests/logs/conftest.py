@@ -32,8 +32,9 @@ layout = [["mud", "sand", "mussel bed"]]
 
 
 def bout(start="08:00", end="08:10", *, zone="mud", animal="RW", species="dunlin", session="s1", day="2026-09-03"):
-    """A row of a log; a bare time of day gets the date and +02:00."""
-    times = [f"{day}T{t}+02:00" if len(t) in (5, 8) and ":" in t else t for t in (start, end)]
+    """A row of a log; a bare time of day gets the date and +02:00, and seconds, for times to the minute are noted."""
+    whole = [f"{t}:00" if len(t) == 5 and ":" in t else t for t in (start, end)]
+    times = [f"{day}T{t}+02:00" if len(t) == 8 and ":" in t else t for t in whole]
     return [species, animal, session, zone, *times]
 
 
@@ -106,7 +107,7 @@ class Field:
     def entries(log, row=None):
         """Lines of the ledger as (row, field, value, reason, action), of one row if asked."""
         found = [(e.row, e.field, e.value, e.reason, e.action) for e in log.ledger.entries]
-        return sorted(entry for entry in found if row in (None, entry[0]))
+        return sorted((entry for entry in found if row in (None, entry[0])), key=lambda e: (e[0] or 0, *e[1:]))
 
     @staticmethod
     def rows(log):

@@ -22,6 +22,7 @@ def test_sound_bouts_become_visits_with_their_place_in_the_file(field):
         "zone": ["mud", "sand", "mud"],
         "start": [1_788_415_200_000, 1_788_415_800_000, 1_788_415_200_000],
         "end": [1_788_415_800_000, 1_788_415_950_000, 1_788_415_800_000],
+        "amount": [600_000, 150_000, 600_000],
         "file": ["a.csv", "a.csv", "a.csv"],
         "row": [2, 3, 4],
     }
@@ -36,7 +37,7 @@ def test_sound_bouts_become_visits_with_their_place_in_the_file(field):
     [
         ("unknown_zone", {"zone": "creek"}, "zone", "unknown zone", ["no such zone", "mud, sand, mussel bed"], SOUND),
         ("unknown_species", {"species": "knot"}, "species", "unknown species", ["not listed", "dunlin, redshank"], SOUND),
-        ("unreadable", {"start": "9.45"}, "start", "unreadable time", ["ISO 8601", "2026-09-03T08:15:30+02:00"], 0),
+        ("unreadable", {"start": "soon"}, "start", "unreadable time", ["ISO 8601", "2026-09-03T08:15:30+02:00"], 0),
         ("unreadable", {"end": "2026-09-31T08:00Z"}, "end", "unreadable time", ["no such date"], 0),
         ("unreadable", {"end": "2026-09-03T08:05"}, "end", "unreadable time", ["no offset"], 0),
         ("end_before_start", {"end": "07:59:59"}, "end", "end before start", ["before the start", "past midnight"], 0),
@@ -60,7 +61,7 @@ def test_a_row_is_handled_by_its_policy(field, policy, key, row, field_name, rea
 @pytest.mark.parametrize("key", ["unknown_zone", "unknown_species", "unreadable", "end_before_start"])
 def test_a_policy_bears_on_its_own_problem_only(field, key):
     rows = [
-        field.bout(zone="creek"), field.bout(species="knot"), field.bout("9.45"), field.bout(end="07:00"),
+        field.bout(zone="creek"), field.bout(species="knot"), field.bout("soon"), field.bout(end="07:00"),
     ]  # fmt: skip
     log = field.read(rows, problems=f'{key} = "set_aside"')
     assert field.rows(log) == {"set_aside": 1, "stop": 3}
@@ -104,7 +105,7 @@ def test_all_problems_of_a_row_are_told(field):
 def test_a_bout_without_length_is_kept_and_flagged(field):
     log = field.read([field.bout(end="08:00"), field.bout("08:00", "08:10")])
     assert field.rows(log) == {"used": 2}
-    assert field.entries(log) == [(2, "end", "2026-09-03T08:00+02:00", "zero duration", "flagged")]
+    assert field.entries(log) == [(2, "end", "2026-09-03T08:00:00+02:00", "zero duration", "flagged")]
     assert log.ledger.milliseconds["used"] == SOUND
     log.require_usable()
 
@@ -115,8 +116,17 @@ def test_24_00_is_read_as_the_next_midnight_and_told(field):
     assert field.entries(log) == [(2, "end", "2026-09-03T24:00:00+02:00", "24:00", "repaired")]
 
 
-def test_a_bout_over_midnight_without_the_new_date_is_not_guessed_at(field):
+def test_a_bout_over_midnight_without_the_new_date_is_carried_on_and_told(field):
     log = field.read([field.bout("23:50", "00:10")])
+    assert field.rows(log) == {"used": 1}
+    assert (log.visits["end"] - log.visits["start"]).tolist() == [20 * 60_000]
+    assert [(e.row, e.field, e.action) for e in log.ledger.entries] == [(2, "end", "repaired")]
+    assert "next day" in field.problem(log, 2)
+
+
+def test_midnight_is_not_guessed_where_the_bout_would_be_long_or_the_study_says_stop(field):
+    assert field.rows(field.read([field.bout("12:00", "11:00")])) == {"stop": 1}
+    log = field.read([field.bout("23:50", "00:10")], logs='clock = { midnight = "stop" }')
     assert field.rows(log) == {"stop": 1}
     assert "next day's date" in field.problem(log, 2)
 

@@ -115,7 +115,7 @@ def test_the_table_has_the_promised_columns_and_order(field):
         ("a.csv", "", "2 row", "used", 600.0),
         ("a.csv", "", "1 row", "out_of_sight", 600.0),
         ("a.csv", "zone", "creek", "set_aside", 600.0),
-        ("a.csv", "end", "2026-09-03T08:20+02:00", "flagged", 0.0),
+        ("a.csv", "end", "2026-09-03T08:20:00+02:00", "flagged", 0.0),
         ("a.csv", "zone", "", "flagged", 0.0),
         ("b.csv", "", "1 row", "used", 0.25),
         ("b.csv", "animal", "", "set_aside", 600.0),

@@ -28,7 +28,7 @@ FAULTS = {
     "session missing": (lambda row: {**row, "session": "\u00a0"}, "set_aside", True),
     "start missing": (lambda row: {**row, "start": ""}, "set_aside", False),
     "end missing": (lambda row: {**row, "end": " "}, "set_aside", False),
-    "start unreadable": (lambda row: {**row, "start": "9.45"}, "unreadable", False),
+    "start unreadable": (lambda row: {**row, "start": "soon"}, "unreadable", False),
     "end impossible": (lambda row: {**row, "end": "2026-09-31T10:00:00+02:00"}, "unreadable", False),
     "times swapped": (lambda row: {**row, "start": row["end"], "end": row["start"]}, "end_before_start", False),
     "no time passes": (lambda row: {**row, "end": row["start"]}, "used", False),
@@ -136,8 +136,8 @@ def test_all_faults_at_once_are_each_found(field):
     }  # fmt: skip
 
 
-cells = st.text(max_size=12) | st.sampled_from(
-    ["mud", "dunlin", "2026-09-03T08:00Z", "2026-09-03T09:00Z", '"', ",", "\x00"]
+cells = st.text(st.characters(exclude_characters="\x00", exclude_categories=["Cs"]), max_size=12) | st.sampled_from(
+    ["mud", "dunlin", "2026-09-03T08:00Z", "2026-09-03T09:00Z", '"', ","]
 )
 
 

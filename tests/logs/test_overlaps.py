@@ -132,10 +132,12 @@ def test_a_row_that_differs_in_anything_is_no_repeat(field, other):
 
 def table(bouts):
     rows = [
-        ("dunlin", animal, "s", "mud", start, start + length, "a.csv", n)
+        ("dunlin", animal, "s", "mud", start, start + length, length, "a.csv", n)
         for n, (animal, start, length) in enumerate(bouts, 2)
     ]
-    return pd.DataFrame(rows, columns=COLUMNS).astype({"start": np.int64, "end": np.int64, "row": np.int64})
+    return pd.DataFrame(rows, columns=COLUMNS).astype(
+        {"start": np.int64, "end": np.int64, "amount": np.int64, "row": np.int64}
+    )
 
 
 bouts = st.lists(st.tuples(st.sampled_from("AB"), st.integers(0, 60), st.integers(0, 20)), max_size=25)

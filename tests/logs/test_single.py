@@ -88,7 +88,7 @@ def test_a_path_that_is_not_there_or_ends_in_toml_or_is_a_folder_is_taken_for_a_
             open_study(path)
 
 
-@pytest.mark.parametrize("zone", ["mud\x00", "\u200b", "Ⅷ", "ſ", "İ", "ß", "x" * 5000, "mud  \u00a0flat", "\U0001f426"])
+@pytest.mark.parametrize("zone", ["\u200b", "Ⅷ", "ſ", "İ", "ß", "x" * 5000, "mud  \u00a0flat", "\U0001f426"])
 def test_any_zone_that_a_log_names_is_a_zone(field, zone):
     study = open_study(write(field, field.text(field.bout(zone=zone), field.bout("09:00", "09:10", zone="mud"))))
     log = read_logs(study)

@@ -45,7 +45,7 @@ def test_a_zone_of_a_sheet_that_is_a_label_for_out_of_sight_is_refused(texts, wi
 @pytest.mark.parametrize(("key", "other"), [("end", "start"), ("animal", "session"), ("zone", "species")])
 def test_a_heading_named_for_two_things_is_refused(texts, key, other):
     (line,) = texts.problems(texts.changed((f'{key} = "{key}"', f'{key} = "{other}"')))
-    assert line.startswith(f"logs.columns: the heading {other!r} is named for two things")
+    assert line.startswith(f"logs: the heading {other!r} is named for two things")
 
 
 def test_a_study_without_animals_names_sessions(texts):

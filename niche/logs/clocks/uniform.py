@@ -13,7 +13,7 @@ import numpy as np
 import pyarrow as pa
 from numpy.typing import NDArray
 
-from niche.logs.clocks.written import Numbers, Written, assembled, calendar_days
+from niche.logs.clocks.written import NO_OFFSET, Numbers, Written, assembled, calendar_days
 
 _MODEL = re.compile(
     r"\d{4}-(?P<month>\d\d)-\d\d[T ]\d\d:\d\d(?::(?P<second>\d\d)(?:[.,](?P<fraction>\d{1,9}))?)?"
@@ -57,6 +57,8 @@ def read_uniform(text: Any) -> Written:
     places = min(len(model["fraction"] or ""), 3)
     milli = group("fraction", 3) * 10 ** (3 - places) if places else zero
     offset = group("hours") * 60 + group("minutes") if model["hours"] else zero
+    if model["hours"]:
+        offset = np.where(group("minutes") > 59, NO_OFFSET, offset)
     if model["offset"] and model["offset"][0] == "-":
         offset = -offset
     written = assembled(

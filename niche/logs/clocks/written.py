@@ -11,6 +11,8 @@ import pyarrow.compute as pc
 from numpy.typing import NDArray
 
 DAY = 86_400_000
+NO_OFFSET = 100 * 60
+"""Minutes of an offset that no place can have."""
 
 Numbers = NDArray[np.int64]
 
@@ -189,6 +191,8 @@ def _offsets(found: Any) -> tuple[Numbers, NDArray[np.bool_]]:
     for text in coded.dictionary.to_pylist():
         digits = text[1:].replace(":", "").ljust(4, "0")
         size = int(digits[:2]) * 60 + int(digits[2:]) if text not in ("", "Z") else 0
+        if text not in ("", "Z") and int(digits[2:]) > 59:
+            size = NO_OFFSET
         minutes.append(-size if text.startswith("-") else size)
     index = np.asarray(coded.indices)
     names = np.array(coded.dictionary.to_pylist(), dtype=object)

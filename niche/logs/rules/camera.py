@@ -127,6 +127,8 @@ class Camera:
         where = np.flatnonzero(given)
         for position, entries in ends.problems.items():
             rows.problems.setdefault(int(where[position]), []).extend(entries)
+        for position, entries in ends.notes.items():
+            rows.notes.setdefault(int(where[position]), []).extend(entries)
         end = start.copy()
         end[where[fine]] = ms[fine]
         backward = timed & (end < start)

@@ -17,6 +17,9 @@ from niche.study.model import Study
 
 _HOUR = 3_600_000
 
+CENTURY = 100 * 366 * DAY
+"""A longer bout is a slip of the pen."""
+
 Span = tuple[NDArray[np.int64], NDArray[np.int64], Mask]
 """Start, end, and whether both could be read and are in order."""
 
@@ -51,6 +54,7 @@ class Spans:
 
     def _from_two_columns(self, rows: Rows) -> Span:
         first, second = self._times.column(rows, "start"), self._times.column(rows, "end")
+        self._times.agree(rows, first, second)
         added = self._times.add_nights(rows, first)
         second.written.ms += added * DAY
         self._carry_past_midnight(rows, first.written, second)
@@ -90,6 +94,10 @@ class Spans:
     def _in_order(self, rows: Rows, end: Column, span: Span) -> Span:
         """Tell the rows which bouts end before they start, or as they start."""
         start, stop, timed = span
+        beyond = timed & (stop - start > CENTURY)
+        advice = "more than a century after the start; is the year right?"
+        rows.problem("end", beyond, end.cells, "unreadable time", advice, self.study.logs.problems.unreadable)
+        timed = timed & ~beyond
         backward = timed & (stop < start)
         advice = "the end is before the start; if the bout ran past midnight, give the end the next day's date"
         policy = self.study.logs.problems.end_before_start

@@ -100,6 +100,7 @@ def hold(rows: Rows, wait_for: Iterable[str] = ()) -> Mask:
         if not {entry.field for entry in entries} <= may_wait:
             rows.ledger.dispose(entries)
             waits[position] = False
+    rows.tell()
     return waits
 
 
