@@ -92,12 +92,29 @@ def out_of_sight_by_session(visits: pd.DataFrame, measure: Measure = "time") -> 
     return table
 
 
-def effort_by_day(visits: pd.DataFrame, time_zone: str | None) -> pd.DataFrame:
-    """Hours in view on each date for each species (rows dates, columns species); dates local where a zone is declared."""
+def effort_by_day(visits: pd.DataFrame, time_zone: str | None, measure: Measure = "time") -> pd.DataFrame:
+    """What was seen on each date of each species.
+
+    Parameters
+    ----------
+    visits : DataFrame
+        Columns of `niche.logs.visits.COLUMNS`; visits out of sight are left out.
+    time_zone : str, optional
+        Zone of the dates; UTC by default.
+    measure : str
+        What use is measured in.
+
+    Returns
+    -------
+    DataFrame
+        Hours in view, or how many were seen where use is not measured in time; rows are dates, columns species. Empty for
+        a tally sheet, which tells no dates.
+    """
     start = pd.to_datetime(visits["start"].to_numpy(dtype=np.int64), unit="ms", utc=True)
     local = start.tz_convert(time_zone) if time_zone else start
-    view = (visits["zone"] != OUT_OF_SIGHT).to_numpy()
-    hours = ((visits["end"] - visits["start"]) / 3_600_000).to_numpy()
+    dated = bool(visits["start"].any())  # a tally sheet does not tell when
+    view = (visits["zone"] != OUT_OF_SIGHT).to_numpy() & dated
+    amount = (visits["amount"] / (3_600_000 if measure == "time" else 1)).to_numpy()
     frame = pd.DataFrame({"date": local.strftime("%Y-%m-%d")[view], "species": visits["species"].to_numpy()[view]})
-    frame["hours"] = hours[view]
-    return frame.pivot_table(index="date", columns="species", values="hours", aggfunc="sum", fill_value=0.0)
+    frame["amount"] = amount[view]
+    return frame.pivot_table(index="date", columns="species", values="amount", aggfunc="sum", fill_value=0.0)

@@ -64,6 +64,9 @@ class Usage:
         What ``time`` holds.
     by_effort : bool
         Whether `use` is ``time`` divided by effort.
+    placed : bool
+        Whether people, not animals, chose the zone of each unit, as with cameras: units then tell nothing of how animals
+        differ, and results have no interval.
     """
 
     species: tuple[str, ...]
@@ -76,6 +79,7 @@ class Usage:
     effort: NDArray[np.float64] | None = None
     measure: Measure = "time"
     by_effort: bool = False
+    placed: bool = False
 
     @classmethod
     def from_units(
@@ -214,12 +218,13 @@ class Usage:
             zones,
             tuple(units),
             tuple(time),
-            tuple(counts),
+            None if study.logs.rule == "tallies" else tuple(counts),  # a sum tells of no visits
             unit,
             study_availability(study),
             effort,
             study.logs.measure,
             study.analysis.effort == "divide",
+            placed=study.logs.rule == "camera",
         )
         if (contradiction := used_unseen(usage.zones, usage.effort, usage.time)) is not None:
             raise StudyError(f"zones.effort: {contradiction}")

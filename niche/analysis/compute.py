@@ -102,6 +102,8 @@ def analyse(
 
     point = material.statistics([np.ones(n) for n in usage.unit_counts], wanted, rates)
     pooled = material.pooled(wanted, rates)
+    if usage.placed:  # products between deployments would tell where people put them
+        point = pooled
     draws, left_out = gather(
         material, strata, wanted, rates, resamples, generators[: len(strata.sizes)], progress, tile
     )
@@ -164,7 +166,7 @@ def _use(material: Material, proportion: Estimate, draws: Floats, options: Optio
     member = core_zones(amount, options.core)
     frequency = core_zones(np.nan_to_num(draws), options.core).mean(axis=0)
     held = np.where(member, np.nan_to_num(proportion.value), 0.0).sum(axis=1)
-    few = usage.unit_counts < FEWEST_UNITS
+    few = (usage.unit_counts < FEWEST_UNITS) | usage.placed
     return Use(
         amount,
         proportion,

@@ -30,7 +30,7 @@ class Estimator:
 
     def units(self, dimensions: int) -> NDArray[np.int64]:
         """Fewest units that each cell rests on: shape (S,), or (S, S) for pairs."""
-        counts = self.usage.unit_counts
+        counts = np.zeros_like(self.usage.unit_counts) if self.usage.placed else self.usage.unit_counts
         return counts if dimensions == 1 else np.minimum(counts[:, None], counts[None, :])
 
     def estimate(

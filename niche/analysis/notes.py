@@ -45,6 +45,12 @@ def _title(name: str) -> str:
 
 
 def _few_units(usage: Usage) -> Iterator[str]:
+    if usage.placed:
+        yield (
+            "People chose the zone of each deployment, so deployments do not tell how animals differ: values are "
+            'pooled, and there is no interval. Uneven numbers of cameras show as uneven use unless `analysis.effort` is "divide".'
+        )
+        return
     counts = dict(zip(usage.species, usage.unit_counts.tolist(), strict=True))
     none = [name for name, n in counts.items() if n == 0]
     if none:
@@ -163,6 +169,8 @@ _METHODS = {
 
 def interval_rests_on(usage: Usage, options: Options) -> str:
     """What every interval of an analysis rests on, in one line for captions and tables."""
+    if usage.placed:
+        return f"Pooled values without intervals: people chose the zone of each {usage.unit}."
     counts = ", ".join(f"{name} {n}" for name, n in zip(usage.species, usage.unit_counts.tolist(), strict=True))
     method = f"{level(options.confidence)} {_METHODS[options.interval]} intervals"
     drawn = f"{options.resamples} resamples, seed {options.seed}"

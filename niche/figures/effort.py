@@ -17,13 +17,15 @@ if TYPE_CHECKING:
     import pandas as pd
 
 
-def effort_timeline(by_day: pd.DataFrame) -> Drawing:
-    """Bars of hours in view by date, one strip a species on shared axes, so that gaps in the watching show.
+def effort_timeline(by_day: pd.DataFrame, seen: str = "hours in view") -> Drawing:
+    """Bars of hours in view, or of what else was seen, by date: a strip a species, so that gaps in the watching show.
 
     Parameters
     ----------
     by_day : DataFrame
-        Hours; rows are dates ``YYYY-MM-DD``, columns species (as `niche.effort.effort_by_day` gives).
+        Amounts; rows are dates ``YYYY-MM-DD``, columns species (as `niche.effort.effort_by_day` gives).
+    seen : str
+        What the amounts are, as a plural.
 
     Returns
     -------
@@ -54,7 +56,7 @@ def effort_timeline(by_day: pd.DataFrame) -> Drawing:
                 linewidth=0.8,
             )
             axes.set_title(wrapped(name, 50, 2), loc="left", fontsize=10)
-            axes.set_title(_hours(hours), loc="right", fontsize=9)
+            axes.set_title(_amount(hours, seen), loc="right", fontsize=9)
             axes.grid(axis="y")
             axes.spines[["top", "right"]].set_visible(False)
             axes.yaxis.set_major_locator(MaxNLocator(3, integer=True))
@@ -64,17 +66,17 @@ def effort_timeline(by_day: pd.DataFrame) -> Drawing:
         locator = AutoDateLocator(minticks=2, maxticks=7, interval_multiples=False)  # type: ignore[no-untyped-call]
         last.xaxis.set_major_locator(locator)
         last.xaxis.set_major_formatter(DateFormatter("%Y-%m-%d"))  # type: ignore[no-untyped-call]
-        figure.supylabel("hours in view", fontsize=10)
+        figure.supylabel(seen, fontsize=10)
     told = "; ".join(
-        f"{name}: {_hours(by_day[column].to_numpy(dtype=np.float64))}"
+        f"{name}: {_amount(by_day[column].to_numpy(dtype=np.float64), seen)}"
         for name, column in zip(names, by_day, strict=True)
     )
-    alt = (
-        f"Bars of hours in view on each date from {by_day.index[0]} to {by_day.index[-1]}, one strip a species. {told}."
-    )
-    return Drawing("effort_timeline", "Hours in view on each date", alt, figure)
+    alt = f"Bars of {seen} on each date from {by_day.index[0]} to {by_day.index[-1]}, one strip a species. {told}."
+    return Drawing("effort_timeline", f"{seen.capitalize()} on each date", alt, figure)
 
 
-def _hours(hours: np.ndarray[tuple[int, ...], np.dtype[np.float64]]) -> str:
+def _amount(hours: np.ndarray[tuple[int, ...], np.dtype[np.float64]], seen: str) -> str:
     dates = int((hours > 0).sum())
+    if seen != "hours in view":
+        return f"{hours.sum():,.0f} on {count(dates, 'date')}, {hours.max():,.0f} at most"
     return f"{number(float(hours.sum()), 1)} h on {count(dates, 'date')}, {number(float(hours.max()), 1)} h at most"

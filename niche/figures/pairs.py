@@ -30,7 +30,9 @@ def pairs(analysis: Analysis) -> Iterator[Pair]:
     usage = analysis.usage
     units = usage.unit_counts.tolist()
     for (s, first), (t, second) in combinations(enumerate(usage.species), 2):
-        yield Pair(s, t, first, second, no_interval([units[s], units[t]], [first, second], usage.unit))
+        yield Pair(
+            s, t, first, second, no_interval([units[s], units[t]], [first, second], usage.unit, placed=usage.placed)
+        )
 
 
 def require_pairs(analysis: Analysis, what: str) -> list[Pair]:

@@ -75,14 +75,16 @@ def joined(parts: Sequence[str]) -> str:
     return parts[0] if len(parts) == 1 else f"{', '.join(parts[:-1])} and {parts[-1]}" if parts else ""
 
 
-def no_interval(units: Sequence[int], names: Sequence[str], unit: str) -> str:
-    """Why there is no interval: which species has too few units.
+def no_interval(units: Sequence[int], names: Sequence[str], unit: str, *, placed: bool = False) -> str:
+    """Why there is no interval: which species has too few units, or that people placed the units.
 
     Examples
     --------
     >>> no_interval([2, 14], ["dunlin", "redshank"], "animal")
     'no interval: 2 animals of dunlin'
     """
+    if placed:
+        return f"no interval: people chose the zone of each {unit}"
     few = [f"{count(n, unit)} of {name}" for n, name in zip(units, names, strict=True) if n < FEWEST_UNITS]
     return f"no interval: {joined(few)}" if few else "no interval: no resample gives a value"
 

@@ -85,7 +85,7 @@ def _recognised(run: Run) -> Assumption:
 
 
 def _watching(run: Run) -> list[Assumption]:
-    table = effort(run.log.visits, run.analysis.usage.species)
+    table = effort(run.log.visits, run.analysis.usage.species, run.log.measure)
     total = table["seconds_in_view"] + table["seconds_out_of_sight"]
     shares = [
         f"{name} {percent(float(unseen / whole))}"
@@ -101,7 +101,9 @@ def _watching(run: Run) -> list[Assumption]:
         Assumption(
             "Animals are seen equally well in every zone",
             "unknown",
-            f"Out of sight: {', '.join(shares)} of the watching; where they were then is not known.",
+            f"Out of sight: {', '.join(shares)} of the watching; where they were then is not known."
+            if shares
+            else "The logs do not tell how many were missed in each zone.",
         ),
         Assumption("Watching did not change the use of zones", "unknown", "The logs cannot tell."),
         Assumption(

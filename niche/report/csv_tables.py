@@ -35,8 +35,8 @@ def report_tables(run: Run) -> dict[str, pd.DataFrame]:
     visits, species = run.log.visits, analysis.usage.species
     return {
         **{name: analysis.table(name) for name in COLUMNS},
-        "effort": effort(visits, species),
-        "effort_by_day": hours_by_day(run).reset_index().melt("date", var_name="species", value_name="hours"),
+        "effort": effort(visits, species, run.log.measure),
+        "effort_by_day": _long(by_day(run), run),
         "ledger": run.log.ledger.table(),
         "capacity": _frame(
             CAPACITY,
@@ -47,10 +47,18 @@ def report_tables(run: Run) -> dict[str, pd.DataFrame]:
     }
 
 
-def hours_by_day(run: Run) -> pd.DataFrame:
-    """Hours in view by date (rows) and species (columns, in the order of the study, all of them)."""
-    frame = effort_by_day(run.log.visits, run.study.logs.time_zone)
+def by_day(run: Run) -> pd.DataFrame:
+    """Hours in view, or how many were seen, by date (rows) and species (columns, in the order of the study, all of them)."""
+    frame = effort_by_day(run.log.visits, run.study.logs.time_zone, run.log.measure)
     return frame.reindex(columns=pd.Index(run.analysis.usage.species, name="species"), fill_value=0.0)
+
+
+def _long(frame: pd.DataFrame, run: Run) -> pd.DataFrame:
+    """A row a date and species: hours where use is measured in time, else how many were seen."""
+    timed = run.log.measure == "time"
+    table = frame.reset_index().melt("date", var_name="species", value_name="hours" if timed else "seen")
+    table["seen" if timed else "hours"] = np.nan
+    return table[["date", "species", "hours", "seen"]]
 
 
 def _frame(types: Mapping[str, str], rows: Sequence[tuple[Any, ...]]) -> pd.DataFrame:

@@ -142,7 +142,7 @@ def _without(run: Run) -> str | None:
     counts = usage.unit_counts.tolist()
     if all(n >= FEWEST_UNITS for n in counts):
         return None
-    return no_interval(counts, usage.species, usage.unit)
+    return no_interval(counts, usage.species, usage.unit, placed=usage.placed)
 
 
 def _compliance(run: Run) -> list[tuple[str, str]]:

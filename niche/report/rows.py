@@ -39,7 +39,8 @@ def effort_table(run: Run) -> Table:
     """Who was watched for how long."""
     columns, latin = run.study.logs.columns, {s.name: s.scientific_name for s in run.study.species}
     rows = []
-    for row in effort(run.log.visits, run.analysis.usage.species).to_dict("records"):
+    timed = run.log.measure == "time"
+    for row in effort(run.log.visits, run.analysis.usage.species, run.log.measure).to_dict("records"):
         view, unseen = row["seconds_in_view"], row["seconds_out_of_sight"]
         each = [number(row[f"seconds_{which}"] / 3600) for which in ("least", "median", "most")]
         name, scientific = str(row["species"]), latin.get(str(row["species"]))
@@ -50,10 +51,10 @@ def effort_table(run: Run) -> Table:
                 f"{row['sessions']:,}" if columns.session else "not logged",
                 f"{row['visits']:,}",
                 f"{row['zones_used']} of {len(run.analysis.usage.zones)}",
-                number(view / 3600),
-                percent(unseen / (view + unseen)) if view + unseen > 0 else UNDEFINED,
+                number(view / 3600) if timed else "not measured",
+                (percent(unseen / (view + unseen)) if view + unseen > 0 else UNDEFINED) if timed else "not measured",
                 percent(row["most_watched_share"]) if columns.animal else "not logged",
-                " / ".join(each) if columns.animal and view > 0 else UNDEFINED if columns.animal else "not logged",
+                _each(each, logged=columns.animal is not None, timed=timed, seen=view > 0),
             )
         )
     headings = (
@@ -68,6 +69,15 @@ def effort_table(run: Run) -> Table:
         "Hours an animal (least / median / most)",
     )
     return Table("effort", "effort", "Effort by species", headings, tuple(rows))
+
+
+def _each(hours: list[str], *, logged: bool, timed: bool, seen: bool) -> str:
+    """Hours of the least, the median and the most watched animal, or why there are none."""
+    if not logged:
+        return "not logged"
+    if not timed:
+        return "not measured"
+    return " / ".join(hours) if seen else UNDEFINED
 
 
 _BECAME = {"read": "read", "used": "used", "out_of_sight": "out of sight", "set_aside": "set aside", "stop": "stopping"}
@@ -149,7 +159,7 @@ def breadth_table(run: Run) -> Table:
     usage, rows = analysis.usage, []
     for s, name in enumerate(usage.species):
         units = int(usage.unit_counts[s])
-        without = no_interval([units], [name], usage.unit)
+        without = no_interval([units], [name], usage.unit, placed=usage.placed)
         for index, e in analysis.breadth.items():
             interval = without if np.isnan(e.low[s]) else span(e.low[s], e.high[s])
             row = (number(e.value[s]), interval, number(e.pooled[s]), f"{units:,}", f"{e.undefined[s]:,}")

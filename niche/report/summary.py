@@ -12,7 +12,8 @@ from niche.effort import effort
 from niche.figures.pairs import pairs
 from niche.figures.windows import Window, windows
 from niche.figures.words import UNDEFINED, count, joined, level, no_interval, number, percent, span
-from niche.report.csv_tables import hours_by_day
+from niche.report.csv_tables import by_day
+from niche.report.measures import holds
 
 if TYPE_CHECKING:
     from niche.analysis import Analysis, Run
@@ -45,18 +46,18 @@ def summarise(run: Run) -> Summary:
 
 
 def _data(run: Run) -> str:
-    table = effort(run.log.visits, run.analysis.usage.species)
+    table = effort(run.log.visits, run.analysis.usage.species, run.log.measure)
     hours, unseen = table["seconds_in_view"].sum() / 3600, table["seconds_out_of_sight"].sum() / 3600
-    days = hours_by_day(run).index
-    when = f"on {days[0]}" if len(days) == 1 else f"from {days[0]} to {days[-1]}"
+    days = by_day(run).index
+    when = "" if days.empty else f", on {days[0]}" if len(days) == 1 else f", from {days[0]} to {days[-1]}"
     units = count(int(run.analysis.usage.unit_counts.sum()), run.analysis.usage.unit)
     species = run.analysis.usage.species
     whom = species[0] if len(species) == 1 else f"{len(species)} species"
+    told = f"The logs hold {holds(run, hours)} of {whom}, {units} in all{when}"
+    if run.log.measure != "time":
+        return f"{told}."
     share = percent(unseen / (hours + unseen)) if hours + unseen > 0 else UNDEFINED
-    return (
-        f"The logs hold {number(hours, 1)} hours in view of {whom}, {units} in all, {when}; the animals were out of sight "
-        f"for {share} of the watching."
-    )
+    return f"{told}; the animals were out of sight for {share} of the watching."
 
 
 def _species(run: Run) -> list[Item]:
@@ -72,7 +73,9 @@ def _species(run: Run) -> list[Item]:
         text = f"{count(units, usage.unit)}; its core, {zones}, holds {percent(use.core_share[s])} of its use."
         if "levins" in analysis.breadth:
             e = analysis.breadth["levins"]
-            interval = _interval(e.low[s], e.high[s], analysis, no_interval([units], [name], usage.unit))
+            interval = _interval(
+                e.low[s], e.high[s], analysis, no_interval([units], [name], usage.unit, placed=usage.placed)
+            )
             told = (
                 UNDEFINED
                 if np.isnan(e.value[s])

@@ -16,8 +16,9 @@ from niche.figures import (
     svg_text,
     zone_maps,
 )
-from niche.report.csv_tables import hours_by_day, report_tables, write_tables
+from niche.report.csv_tables import by_day, report_tables, write_tables
 from niche.report.folder import RECORD, check_folder, files_below, whole_folder, write_text
+from niche.report.measures import SEEN
 from niche.report.package import data_package
 from niche.report.page import capacities, page
 from niche.report.record import now, run_record
@@ -99,9 +100,9 @@ def report_figures(run: Run) -> list[Drawing]:
     """The figures that a run has the numbers for, in the order of the report."""
     analysis = run.analysis
     figures = []
-    by_day = hours_by_day(run)
-    if not by_day.empty:
-        figures.append(effort_timeline(by_day))
+    days = by_day(run)
+    if not days.empty:
+        figures.append(effort_timeline(days, SEEN[run.log.measure]))
     figures.append(zone_maps(analysis, run.study.zones))
     if len(analysis.usage.species) > 1:
         if "pianka" in analysis.overlap:

@@ -38,5 +38,6 @@ def time_zone(name: str) -> tzinfo:
         return timezone(-size if found[1] == "-" else size)
     except (KeyError, ValueError, OSError) as error:
         raise ValueError(
-            f"found {name!r}, and there is no such time zone; give an IANA name such as Europe/Berlin or Etc/GMT-1, or an offset such as +01:00"
+            f"found {name!r}, and there is no such time zone; give an IANA name such as Europe/Berlin or Etc/GMT-1, or an "
+            "offset such as +01:00"
         ) from error

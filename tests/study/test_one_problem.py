@@ -17,7 +17,7 @@ CASES = {
     "unknown key of columns": ('zone = "zone"', 'zones = "zone"', "logs.columns.zones: unknown key", "`zone`"),
     "unknown table": ("[report]", "[reports]", "reports: unknown key", "`report`"),
     "title missing": ('title = "Two waders on a flat"\n', "", "title: missing", "required"),
-    "columns missing": (BLOCK["columns"], "columns = { date = 'date' }\n", "logs: ", "`end`", "`duration`", "one of the two"),
+    "columns missing": (BLOCK["columns"], "columns = { date = 'date' }\n", "logs: ", "`end`", "one of the two"),
     "source of k missing": (', source = "a count"', "", "species[1].k.source: missing", "required"),
     "source of availability missing": ('source = "a survey"\n', "", "zones.availability.source: missing"),
     "name of a species missing": ('name = "redshank"\n', "", "species[2].name: missing"),
