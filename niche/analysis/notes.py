@@ -48,7 +48,8 @@ def _few_units(usage: Usage) -> Iterator[str]:
     if usage.placed:
         yield (
             "People chose the zone of each deployment, so deployments do not tell how animals differ: values are "
-            'pooled, and there is no interval. Uneven numbers of cameras show as uneven use unless `analysis.effort` is "divide".'
+            "pooled, and there is no interval. Uneven numbers of cameras show as uneven use unless `analysis.effort` is "
+            '"divide".'
         )
         return
     counts = dict(zip(usage.species, usage.unit_counts.tolist(), strict=True))

@@ -1,5 +1,9 @@
-"""The command line: the only part that prints."""
+"""The command line: the only part that prints.
 
-from niche.cli.app import app, main
+Each command parses, calls the library, prints and translates. Commands stand in the help in the order of these imports.
+"""
+
+from niche.cli import beginning, results, folders  # noqa: F401, I001 - importing a module adds its commands
+from niche.cli.program import app, main
 
 __all__ = ["app", "main"]

@@ -41,9 +41,7 @@ def read_xlsx(path: Path, wanted: Wanted, piece_rows: int = PIECE_ROWS) -> Itera
     try:
         import openpyxl  # type: ignore[import-untyped]
     except ImportError:
-        raise NicheError(
-            f"{wanted.name}: reading XLSX needs openpyxl: install niche with the extra, `niche[workbooks]`."
-        ) from None
+        raise NicheError(f"{wanted.name}: reading XLSX needs openpyxl, which is not installed; install it.") from None
     with open_zip(path, wanted.name) as archive:
         with readable(wanted.name), warnings.catch_warnings():
             warnings.simplefilter("ignore")  # about looks that are not kept

@@ -1,110 +1,23 @@
-"""The commands. Each parses, calls the library, prints and translates; heavy imports wait until a command needs them."""
+"""The commands that print one table. Heavy imports wait until a command needs them."""
 
 from __future__ import annotations
 
-import sys
 from pathlib import Path
 from typing import Annotated
 
 import typer
 
-from niche import __version__
-from niche.cli.console import Exit, errors_translated, progress, say
+from niche.cli.console import errors_translated, progress, say
 from niche.cli.options import (
     Chosen,
     Format,
     FormatOption,
     OutFile,
-    OutFolder,
     Quiet,
     StudyPath,
     with_settings,
 )
-
-app = typer.Typer(
-    help="From a log of which zone each animal used, when, to how species share the habitat: use, breadth, overlap, "
-    "competition coefficients, outcome, report. Each with how sure it is.",
-    epilog="Overlap is similarity of use, not competition. Have a qualified ecologist review results before decisions.",
-    add_completion=False,
-    no_args_is_help=True,
-    pretty_exceptions_enable=False,
-    rich_markup_mode=None,
-)
-
-
-def main() -> None:
-    """Entry point of the command ``niche``."""
-    app()
-
-
-def _version(asked: bool) -> None:
-    if asked:
-        typer.echo(f"niche {__version__}")
-        raise typer.Exit
-
-
-@app.callback()
-def _common(
-    version: Annotated[
-        bool, typer.Option("--version", callback=_version, is_eager=True, help="Print the version.")
-    ] = False,
-) -> None: ...
-
-
-@app.command()
-@errors_translated()
-def start(directory: Annotated[Path, typer.Argument(metavar="DIR", help="New folder for the study.")]) -> None:
-    """Write a starter study: a commented study.toml, an empty log sheet and a zone sheet.
-
-    Example: niche start autumn_flat
-    """
-    from niche.study.starter import write_starter
-
-    for path in write_starter(directory):
-        typer.echo(path)
-    say(f"Fill in the sheets, then: niche check {directory}")
-
-
-@app.command()
-@errors_translated()
-def check(
-    study: StudyPath,
-    form: FormatOption = Format.table,
-    out: OutFile = None,
-    clean: Annotated[
-        Path | None,
-        typer.Option("--clean", metavar="DIR", help="Save the cleaned visits there, as a Data Package with a study."),
-    ] = None,
-    quiet: Quiet = False,
-) -> None:
-    """Read the logs and print the ledger and every problem with file, row, value and remedy. Computes nothing.
-
-    With --format csv or json the ledger itself is written. Exit status 1 if a problem stops the work; then --clean saves
-    nothing.
-
-    Example: niche check sample_logs/spoiled
-
-    Example: niche check sample_logs/tidal_flat --clean cleaned
-    """
-    from niche.cli.checking import summary
-    from niche.cli.render import render, write
-    from niche.logs import open_study, read_logs
-
-    with progress("Reading logs", quiet) as report_progress:
-        opened = open_study(study)
-        log = read_logs(opened, report_progress)
-    if form is Format.table:
-        write(summary(log), out)
-    else:
-        write(render(log.ledger.table(), "ledger", form), out)
-    if log.ledger.stops:
-        if clean is not None:
-            say(f"niche: {clean}: nothing is saved, because problems stop the work.")
-        raise typer.Exit(Exit.STOPPED)
-    if clean is not None:
-        from niche.logs.clean import write_clean
-
-        say(f"Saved: {write_clean(log, opened, clean)}")
+from niche.cli.program import app
 
 
 def _table(
@@ -261,62 +174,4 @@ def outcome(
     for line in () if quiet else notes:
         say(line)
     for line in (OUTCOME, REVIEW):
-        say(f"Caution: {line}")
-
-
-@app.command("map")
-@with_settings
-@errors_translated()
-def draw_map(
-    study: StudyPath,
-    out: OutFolder = Path("maps"),
-    quiet: Quiet = False,
-    *,
-    chosen: Chosen,
-) -> None:
-    """Heatmaps of zone use on the layout of the zones, as PNG and SVG.
-
-    Example: niche map sample_logs/tidal_flat --out maps
-    """
-    _folder("maps", study, out, quiet, chosen)
-
-
-@app.command()
-@with_settings
-@errors_translated()
-def report(
-    study: StudyPath,
-    out: OutFolder = Path("report"),
-    quiet: Quiet = False,
-    *,
-    chosen: Chosen,
-) -> None:
-    """Everything in one folder: a page to read, tables, figures, data package, run record.
-
-    Example: niche report sample_logs/tidal_flat --out report
-    """
-    _folder("report", study, out, quiet, chosen)
-
-
-def _folder(what: str, study: Path, out: Path, quiet: bool, chosen: Chosen) -> None:
-    """What the commands that write a folder share."""
-    import shlex
-
-    from niche.analysis import run_study
-    from niche.cautions import BY_TABLE
-    from niche.logs import open_study
-    from niche.report import check_folder, summarise, write_maps, write_report
-
-    check_folder(out)
-    set_study = chosen.put_into(open_study(study))
-    with progress("Resampling", quiet) as report_progress:
-        run = run_study(set_study, progress=report_progress)
-    command = shlex.join(["niche", *sys.argv[1:]])
-    write_it = write_report if what == "report" else write_maps
-    typer.echo(write_it(run, out, command=command, study_file=study))
-    if what == "report" and not quiet:
-        typer.echo(f"\n{summarise(run).text()}")
-    for line in () if quiet else run.analysis.notes:
-        say(line)
-    for line in dict.fromkeys((*BY_TABLE["usage"], *(BY_TABLE["outcome"] if what == "report" else ()))):
         say(f"Caution: {line}")
