@@ -38,7 +38,7 @@ POLICY = '[logs.problems]\nunknown_zone = "set_aside"'
 def same(one, other):
     """Whether two Usages are the same, to the millisecond and the visit."""
     assert (one.species, one.zones, one.units, one.unit) == (other.species, other.zones, other.units, other.unit)
-    for mine, theirs in zip((*one.time, *one.visits), (*other.time, *other.visits), strict=True):
+    for mine, theirs in zip((*one.time, *(one.visits or ())), (*other.time, *(other.visits or ())), strict=True):
         np.testing.assert_array_equal(mine, theirs)
     assert one.measure == other.measure
     np.testing.assert_array_equal(one.effort, other.effort)
