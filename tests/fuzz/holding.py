@@ -68,7 +68,7 @@ def hold(study_file: Path) -> str:
             study = open_study(study_file)
             log = read_logs(study)
         except NicheError as error:
-            assert "defect of niche" not in str(error), error  # the ledger did not close
+            assert "defect of niche" not in str(error), error  # noqa: PT017 - the ledger did not close
             _plain_words(str(error))
             _inside(opened, folder)
             return "refused"
