@@ -45,6 +45,24 @@ def checked(given: ArrayLike, species: str, what: str, zones: int) -> NDArray[np
     return amounts
 
 
+def checked_counts(
+    visits: Mapping[str, ArrayLike], time: Mapping[str, NDArray[np.float64]]
+) -> tuple[NDArray[np.float64], ...]:
+    """Counts of visits of each species, in the order and of the shape of its use."""
+    strangers = [species for species in visits if species not in time]
+    if strangers:
+        raise ValueRuleError(f"visits names {strangers[0]!r}, which use does not.")
+    counts = []
+    for species, amounts in time.items():
+        if species not in visits:
+            raise ValueRuleError(f"visits has no counts for {species!r}; give them for every species or for none.")
+        count = checked(visits[species], species, "visits", amounts.shape[1])
+        if count.shape != amounts.shape:
+            raise ValueRuleError(f"visits of {species!r} has shape {count.shape}; use has {amounts.shape}.")
+        counts.append(count)
+    return tuple(counts)
+
+
 def checked_row(given: ArrayLike, what: str, zones: int) -> NDArray[np.float64]:
     """One amount a zone, finite and at least 0."""
     row: NDArray[np.float64] = checked(cast("ArrayLike", [given]), "all zones", what, zones)[0]
@@ -76,7 +94,10 @@ def refuse_strangers(visits: pd.DataFrame, zones: Sequence[str], species: Sequen
 def divided(amount: NDArray[np.number], effort: NDArray[np.float64]) -> NDArray[np.float64]:
     """Amounts, shape (U, Z), over effort scaled to a mean of 1 over the zones looked at; 0 in the others."""
     looked = effort > 0
-    scale = np.where(looked, effort, 1.0) / effort[looked].mean()
+    if not looked.any():
+        return np.zeros(amount.shape)
+    hours = effort / effort[looked].max()  # or the sum of very large hours is infinite
+    scale = np.where(looked, hours, 1.0) / hours[looked].mean()
     return np.asarray(np.where(looked, amount / scale, 0.0))
 
 

@@ -15,6 +15,7 @@ from numpy.typing import ArrayLike, NDArray
 from niche.amounts import (
     check_addable,
     checked,
+    checked_counts,
     checked_row,
     divided,
     natural,
@@ -131,31 +132,15 @@ class Usage:
             raise ValueRuleError("use names no species; give at least one.")
         if unit not in ("animal", "session"):
             raise ValueRuleError(f"unit is {unit!r}; it must be 'animal' or 'session'.")
-        strangers = [species for species in visits or {} if species not in use]
-        if strangers:
-            raise ValueRuleError(f"visits names {strangers[0]!r}, which use does not.")
-        time, counts, labels = [], [], []
-        for species, given in use.items():
-            amounts = checked(given, species, "use", len(names))
-            time.append(amounts)
-            labels.append(tuple(str(i + 1) for i in range(len(amounts))))
-            if visits is not None:
-                if species not in visits:
-                    raise ValueRuleError(
-                        f"visits has no counts for {species!r}; give them for every species or for none."
-                    )
-                count = checked(visits[species], species, "visits", len(names))
-                if count.shape != amounts.shape:
-                    raise ValueRuleError(f"visits of {species!r} has shape {count.shape}; use has {amounts.shape}.")
-                counts.append(count)
+        time = {species: checked(given, species, "use", len(names)) for species, given in use.items()}
         share = None if availability is None else shares(checked_row(availability, "availability", len(names)))
         hours = None if effort is None else checked_row(effort, "effort", len(names))
         usage = cls(
-            tuple(use),
-            names,
-            tuple(labels),
             tuple(time),
-            tuple(counts) if visits is not None else None,
+            names,
+            tuple(tuple(str(number) for number in range(1, len(amounts) + 1)) for amounts in time.values()),
+            tuple(time.values()),
+            None if visits is None else checked_counts(visits, time),
             unit,
             share,
             hours,

@@ -8,6 +8,7 @@ from pydantic import Field, field_validator, model_validator
 
 from niche.study.names import named_twice
 from niche.study.rule_columns import with_rule_columns
+from niche.study.rule_needs import check_needs
 from niche.study.section import Positive, Section, Text, Texts
 from niche.study.standard_columns import with_standard_columns
 from niche.study.time_pattern import check_pattern
@@ -271,50 +272,5 @@ class Logs(Section):
 
     @model_validator(mode="after")
     def _has_what_the_rule_needs(self) -> Self:
-        columns = self.columns
-        if not self.files and self.file.database is None:
-            raise ValueError("`files` names no log; give at least one file, or a database under `logs.file`")
-        if self.file.standard == "camtrap-dp" and self.rule != "camera":
-            raise ValueError("`file.standard` is 'camtrap-dp', which goes with rule = \"camera\": events are not stays")
-        if self.rule == "bouts":
-            self._bouts_have_an_end()
-        dated, form = columns.date is not None, self.clock.format
-        if dated and form in ("unix_seconds", "unix_milliseconds", "elapsed", "frames"):
-            raise ValueError(f"`clock.format` is {form!r}, which needs no date: leave `columns.date` out")
-        if form == "decimal_hours" and not dated:
-            raise ValueError("`clock.format` is 'decimal_hours': name the column of the date as `columns.date`")
-        if form in ("elapsed", "frames") and (self.sessions is None or columns.session is None):
-            raise ValueError(
-                f"`clock.format` is {form!r}, counted from the start of each session: give `logs.sessions.file` and "
-                "`columns.session`"
-            )
-        if self.rule == "reads" and self.reads is None:
-            raise ValueError("the rule 'reads' needs `logs.reads.gap`: the seconds without a read that end a visit")
-        if self.rule == "tallies" and self.tallies is None:
-            raise ValueError("the rule 'tallies' needs `logs.tallies.unit`: s, min, h, percent or count")
-        if self.duration_unit == "frames" and self.clock.frames_per_second is None:
-            raise ValueError("duration_unit is 'frames': give `logs.clock.frames_per_second` too")
+        check_needs(self)
         return self
-
-    def _bouts_have_an_end(self) -> None:
-        columns = self.columns
-        if (needed := next((n for n in ("species", "zone", "start") if getattr(columns, n) is None), None)) is not None:
-            raise ValueError(f"the rule 'bouts' needs the heading of its {needed} column as `columns.{needed}`")
-        if columns.animal is None and columns.session is None:
-            raise ValueError(
-                "`animal` is empty and there is no `session`; one of them must be named, as the sampling unit"
-            )
-        if columns.end is not None and columns.duration is not None:
-            raise ValueError(
-                "a bout ends by its `end` or its `duration` column: name one of the two under `logs.columns`"
-            )
-        if (
-            columns.end is None
-            and columns.duration is None
-            and (self.clock.format != "iso" or columns.date is not None)
-        ):
-            raise ValueError(
-                "a bout ends by its `end` or its `duration` column: name one of the two under `logs.columns`. Only with "
-                "`clock.format` = 'iso' and no `columns.date` may both be left out: then each start cell holds an "
-                "interval such as 2026-09-03T08:15/08:40"
-            )

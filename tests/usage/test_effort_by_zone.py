@@ -109,6 +109,18 @@ def test_equal_effort_changes_nothing_when_divided_by(tmp_path):
     np.testing.assert_array_equal(divided.overlap["pianka"].value, plain.overlap["pianka"].value)
 
 
+@pytest.mark.parametrize("size", [1e-300, 1.0, 1e300, 1.7e308])
+def test_only_the_ratios_of_hours_matter_whatever_their_size(size):
+    usage = Usage.from_units({"dunlin": [[3, 1, 0]]}, zones=ZONES, effort=[size, size / 4, 0], by_effort=True)
+    # 1 and 1/4 are 1.6 and 0.4 of their mean
+    np.testing.assert_allclose(usage.use[0], [[3 / 1.6, 1 / 0.4, 0]])
+
+
+def test_where_no_zone_was_looked_at_there_is_no_use():
+    usage = Usage.from_units({"dunlin": [[0, 0, 0]]}, zones=ZONES, effort=[0, 0, 0], by_effort=True)
+    assert usage.use[0].tolist() == [[0, 0, 0]]
+
+
 def test_use_of_a_zone_that_was_not_looked_at_is_a_contradiction(tmp_path):
     wrong = 'effort = { "upper sand" = 1, "upper mud" = 0, "lower mud" = 0 }'
     with pytest.raises(StudyError, match=r"zones.effort: zone 'upper mud' has use and 0 hours"):
