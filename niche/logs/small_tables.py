@@ -94,8 +94,8 @@ def read_small_table(study: Study, file: str, key: str, needed: Sequence[str], k
             lines = [(reader.line_num, cells) for cells in reader]
     except FileNotFoundError:
         raise StudyError(f"{path}: `{key}` names this file, and there is no such file.") from None
-    except (OSError, UnicodeDecodeError, csv.Error) as error:
-        raise StudyError(f"{path}: cannot be read as UTF-8 CSV ({error}).") from None
+    except (OSError, ValueError, csv.Error) as error:  # ValueError: not UTF-8, or a path with a NUL in it
+        raise StudyError(f"{str(path)!r}: cannot be read as UTF-8 CSV ({error}).") from None
     headings = [tidy(cell).casefold() for cell in lines[0][1]] if lines else []
     for heading in needed:
         if heading not in headings:

@@ -7,7 +7,8 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from niche.errors import StudyError
+from niche.errors import NicheError, StudyError
+from niche.logs import read_logs
 from niche.study import Study, study_from_text
 
 FILE = Path("study.toml")
@@ -74,3 +75,28 @@ def test_thousands_of_unknown_keys_are_told_one_by_one(texts):
 def test_a_thousand_species_are_read(texts):
     text = texts.sound + "".join(f'[[species]]\nname = "wader {i}"\nbody_mass = {i + 1}\n' for i in range(1000))
     assert len(study_from_text(text, FILE).species) == 1002
+
+
+@pytest.mark.parametrize("table", ['sessions = { file = "a\\u0000b" }', 'tags = { file = "a\\u0000b" }'])
+def test_a_small_table_with_a_nul_in_its_name_is_refused(table, tmp_path):
+    (tmp_path / "log.csv").write_text("species,tag,antenna,time\ndunlin,7,a,2026-09-03T08:00:00Z\n", encoding="utf-8")
+    text = f"""
+title = "t"
+[logs]
+files = ["log.csv"]
+rule = "{"switches" if "sessions" in table else "reads"}"
+{table}
+[logs.columns]
+animal = ""
+zone = "antenna"
+{'session = "tag"' if "sessions" in table else 'tag = "tag"'}
+time = "time"
+[logs.reads]
+gap = 60
+[zones]
+rows = ["r"]
+columns = ["1"]
+layout = [["a"]]
+"""
+    with pytest.raises(NicheError, match="null"):
+        read_logs(study_from_text(text, tmp_path / "study.toml"))
